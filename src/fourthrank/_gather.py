@@ -1,0 +1,97 @@
+"""One kernel for packing, unpacking and translating: pick components, and scale them by exactly rounded factors."""
+
+from collections.abc import Sequence
+from fractions import Fraction
+from math import isqrt, prod
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ._arrays import BLOCK_ITEMS, Inexact, take_out
+
+
+class Gather:
+    """The map ``out[..., k] = factor[k] * array[..., index[k]]`` on flattened trailing axes.
+
+    Factors are square roots of rational numbers (a notation's weights are rational, or square roots of 2 times a
+    rational), kept as exact squares, and rounded once for each dtype. So a factor 1, 2 or 4 is exact, and sqrt 2 is
+    within half an ulp, whatever chain of notations led to it.
+
+    Parameters
+    ----------
+    source, target : tuple of int
+        Trailing shapes of what is read and of the result.
+    index : sequence of int
+        Flat places in `source`, one for each component of `target`; None for a component that is zero.
+    squares : sequence of Fraction
+        The squares of the factors.
+    sign : {1, -1}
+        The common sign of the factors.
+    """
+
+    __slots__ = ("_factors", "_index", "_sign", "_squares", "_trivial", "_zeros", "source", "target")
+
+    def __init__(
+        self,
+        source: tuple[int, ...],
+        target: tuple[int, ...],
+        index: Sequence[int | None],
+        squares: Sequence[Fraction],
+        sign: int = 1,
+    ) -> None:
+        self.source = source
+        self.target = target
+        self._index = np.array([0 if i is None else i for i in index], dtype=np.intp)
+        self._zeros = np.array([k for k, i in enumerate(index) if i is None], dtype=np.intp)
+        self._squares = tuple(squares)
+        self._sign = sign
+        self._trivial = sign == 1 and all(square == 1 for square in squares)
+        self._factors: dict[str, NDArray[Any]] = {}
+
+    def __call__(self, array: Inexact, out: NDArray[Any] | None = None) -> Inexact:
+        """Apply the map to an array whose trailing shape is `source`; the result is a new array, or `out`."""
+        batch = array.shape[: array.ndim - len(self.source)]
+        if out is not None:
+            take_out(out, batch + self.target, array.dtype)
+        flat = array.reshape(-1, prod(self.source))
+        factors = None if self._trivial else self._rounded(array.dtype)
+        if out is None:
+            result = np.empty((len(flat), len(self._index)), array.dtype)
+            self._fill(flat, factors, result)
+            return result.reshape(batch + self.target)
+        if out.flags.c_contiguous and out.dtype == array.dtype and not np.may_share_memory(array, out):
+            self._fill(flat, factors, out.reshape(-1, len(self._index)))
+        else:
+            out[...] = self(array)
+        return out
+
+    def _fill(self, flat: Inexact, factors: NDArray[Any] | None, result: Inexact) -> None:
+        for start in range(0, len(flat), BLOCK_ITEMS):
+            block = result[start : start + BLOCK_ITEMS]
+            # mode="clip" lets take write straight into `out`; the index is in range by construction.
+            flat[start : start + BLOCK_ITEMS].take(self._index, axis=1, mode="clip", out=block)
+            if factors is not None:
+                block *= factors
+            if len(self._zeros):
+                block[:, self._zeros] = 0.0
+
+    def _rounded(self, dtype: np.dtype[Any]) -> NDArray[Any]:
+        factors = self._factors.get(dtype.char)
+        if factors is None:
+            real = np.dtype(dtype.char.lower())
+            factors = np.array([self._sign * _root(square, real) for square in self._squares], real)
+            self._factors[dtype.char] = factors
+        return factors
+
+
+def _root(square: Fraction, dtype: np.dtype[Any]) -> Any:
+    """Return the square root of a rational number, rounded to `dtype`."""
+    numerator, denominator = square.numerator, square.denominator
+    p, q = isqrt(numerator), isqrt(denominator)
+    wide = np.longdouble
+    if p * p == numerator and q * q == denominator:
+        # A quotient of Python's integers is correctly rounded to double precision.
+        return wide(p) / wide(q) if dtype == wide else dtype.type(p / q)
+    # Beyond double precision first, so that the only rounding that counts is the last one.
+    return dtype.type(np.sqrt(wide(numerator) / wide(denominator)))

@@ -1,0 +1,1 @@
+"""Elastic constants: the sets that people exchange, to and from stiffness and compliance."""

@@ -1,0 +1,1 @@
+"""A self-describing JSON record of one quantity."""

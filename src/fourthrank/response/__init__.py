@@ -1,0 +1,1 @@
+"""What a tensor means: directional constants, extremes, averages, waves and modes."""

@@ -1,0 +1,1 @@
+"""Symmetry classes: groups, projections, distances, axes and classification."""
