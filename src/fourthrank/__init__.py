@@ -42,5 +42,9 @@ __all__ = [
     "Translator",
     "__version__",
     "assurance",
+    "moduli",
+    "record",
+    "response",
     "rotation",
+    "symmetry",
 ]

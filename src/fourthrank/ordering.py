@@ -262,7 +262,10 @@ def _read_pair(pair: object) -> Pair:
 
 
 def _is_axis(index: object) -> bool:
-    return isinstance(index, Integral) and type(index) is not bool and 0 <= int(index) <= 2
+    return isinstance(index, Integral) and not isinstance(index, _BOOL) and 0 <= int(index) <= 2
+
+
+_BOOL: Final[tuple[type, ...]] = (bool, np.bool_)
 
 
 def _label(pair: Pair) -> str:
