@@ -87,7 +87,9 @@ def is_finite(array: Inexact) -> bool:
         # One pass that writes nothing: a NaN or an infinity always spoils the sum of squares. Squares may also
         # overflow, and only then does the exact test decide.
         flat = array.reshape(-1)
-        if np.isfinite(flat.dot(flat)):
+        with np.errstate(over="ignore", invalid="ignore"):
+            square = flat.dot(flat)
+        if np.isfinite(square):
             return True
     return bool(np.isfinite(array).all())
 

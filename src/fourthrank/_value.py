@@ -14,7 +14,7 @@ from ._arrays import Inexact, broadcast_batches, check_finite, read_only, take_i
 from ._frozen import Frozen
 from .errors import DataError, ImplicitNotationError, NotationError, ShapeError
 from .notation import Notation
-from .rotation import RotationLike, take_rotation
+from .rotation.matrices import RotationLike, take_rotation
 
 Index: TypeAlias = (
     int | slice | EllipsisType | None | Sequence[int] | Sequence[bool] | NDArray[np.integer[Any]] | NDArray[np.bool_]
