@@ -17,7 +17,7 @@ from .notation import Notation
 from .rotation.matrices import RotationLike, take_rotation
 
 Index: TypeAlias = (
-    int | slice | EllipsisType | None | Sequence[int] | Sequence[bool] | NDArray[np.integer[Any]] | NDArray[np.bool_]
+    int | slice | EllipsisType | Sequence[int] | Sequence[bool] | NDArray[np.integer[Any]] | NDArray[np.bool_] | None
 )
 
 
@@ -258,14 +258,14 @@ class Quantity(Frozen):
         return self._combine(other, np.subtract)
 
     def __mul__(self, factor: complex) -> Self:
-        if not isinstance(factor, Number):  # pyright: ignore[reportUnnecessaryIsInstance]  # callers without a checker
+        if not isinstance(factor, Number):  # callers without a checker
             return NotImplemented
         return self.scaled(factor)
 
     __rmul__ = __mul__
 
     def __truediv__(self, divisor: complex) -> Self:
-        if not isinstance(divisor, Number):  # pyright: ignore[reportUnnecessaryIsInstance]  # callers without a checker
+        if not isinstance(divisor, Number):  # callers without a checker
             return NotImplemented
         if not np.isfinite(divisor) or not divisor:
             raise DataError(f"a {type(self).__name__} cannot be divided by {divisor}")

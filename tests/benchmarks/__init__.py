@@ -1,0 +1,1 @@
+"""Measurements against hand-written code; asked for by their path, no part of the default run."""
