@@ -300,7 +300,7 @@ def random(n: int | tuple[int, ...], rng: np.random.Generator) -> NDArray[np.flo
 
     Returns
     -------
-    ndarray of float64, shape (n, 3, 3) or (*n, 3, 3)
+    ndarray of float64, shape (n, 3, 3) or n + (3, 3)
         Rotation matrices.
 
     Raises
