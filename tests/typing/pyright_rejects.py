@@ -14,8 +14,8 @@ from tests.typing.marks import REJECTED, disagreements
 def main() -> int:
     """Print every disagreement and return the exit code."""
     paths = sorted(REJECTED.glob("*.py"))
-    # Named one by one, since the project's configuration leaves the folder out.
-    command = ["pyright", "--outputjson", "--pythonpath", sys.executable, *map(str, paths)]
+    # The project's configuration leaves the folder out, so the folder has one of its own.
+    command = ["pyright", "--outputjson", "--pythonpath", sys.executable, "--project", str(REJECTED)]
     report = json.loads(subprocess.run(command, capture_output=True, text=True, check=False).stdout)
     found: dict[str, set[int]] = {}
     for entry in report["generalDiagnostics"]:
