@@ -257,8 +257,8 @@ class FourthRank(Quantity):
         head = (f"{type(self).__name__} in {unit}", repr(notation))
         return Table(head, labels, list(zip(labels, rows, strict=True)))
 
-    def _rotated(self, rotation: Inexact) -> Inexact:
-        return _mandel.rotate_matrix(self._held, rotation)
+    def _turned(self, rotations: NDArray[np.float64]) -> Inexact:
+        return _mandel.turn_matrices(self._held, rotations)
 
     def _inverted(self) -> Inexact:
         inverse, condition = _mandel.invert(self._held)

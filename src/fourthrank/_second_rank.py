@@ -196,5 +196,5 @@ class SecondRank(Quantity):
             head, (), [(label, (cell,)) for label, cell in zip(notation.ordering.labels(), cells, strict=True)]
         )
 
-    def _rotated(self, rotation: Inexact) -> Inexact:
-        return _mandel.apply(rotation, self._held)
+    def _turned(self, rotations: NDArray[np.float64]) -> Inexact:
+        return _mandel.turn_vectors(self._held, rotations)

@@ -295,11 +295,11 @@ class Quantity(Frozen):
 
     def _turn(self, matrices: NDArray[np.float64], name: str) -> Self:
         broadcast_batches(**{type(self).__name__: self.shape, name: matrices.shape[:-2]})
-        return self._hold(self._rotated(_mandel.rotation_matrices(matrices)))
+        return self._hold(self._turned(matrices))
 
     @abstractmethod
-    def _rotated(self, rotation: Inexact) -> Inexact:
-        """Return the held array turned by 6x6 rotation matrices."""
+    def _turned(self, rotations: NDArray[np.float64]) -> Inexact:
+        """Return the held array turned by rotations, shape (..., 3, 3)."""
 
     def _combine(self, other: Self, operation: np.ufunc) -> Self:
         broadcast_batches(left=self.shape, right=other.shape)
