@@ -14,6 +14,9 @@ from pathlib import Path
 import nox
 
 ROOT = Path(__file__).resolve().parents[1]
+# The command starts in the folder of this file; every check works on the whole project.
+os.chdir(ROOT)
+
 VERSIONS = ("3.11", "3.12", "3.13")
 FLOOR = "numpy==1.26.*"
 # The first release of numpy with wheels for each version of Python; None is the newest one.
@@ -55,6 +58,7 @@ if NOTICE:
     print(f"{'*' * 100}\n* {NOTICE}\n{'*' * 100}", file=sys.stderr)
 
 nox.needs_version = ">=2024.10.9"
+nox.options.envdir = str(ROOT / ".nox")
 nox.options.sessions = ["lint", "types", "tests", "coverage", "docs", "package"]
 nox.options.reuse_venv = "yes"
 nox.options.error_on_missing_interpreters = True
