@@ -14,9 +14,6 @@ from pathlib import Path
 import nox
 
 ROOT = Path(__file__).resolve().parents[1]
-# The command starts in the folder of this file; every check works on the whole project.
-os.chdir(ROOT)
-
 VERSIONS = ("3.11", "3.12", "3.13")
 FLOOR = "numpy==1.26.*"
 # The first release of numpy with wheels for each version of Python; None is the newest one.
@@ -93,6 +90,7 @@ print("Python", platform.python_version(), "with numpy", numpy.__version__, "and
 @nox.session(python=FOUND[OLDEST])
 def tests(session: nox.Session) -> None:
     """Run the tests at the lower end: the oldest Python with the oldest numpy."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     install(session, "test", NUMPY_BY_PYTHON[OLDEST][0])
     run_tests(session)
 
@@ -100,6 +98,7 @@ def tests(session: nox.Session) -> None:
 @nox.session(python=FOUND[NEWEST])
 def coverage(session: nox.Session) -> None:
     """Run the tests at the upper end and demand that every statement and branch is run."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     install(session, "test")
     session.run("coverage", "erase")
     run_tests(session, "-m", "coverage", "run")
@@ -109,6 +108,7 @@ def coverage(session: nox.Session) -> None:
 @nox.session
 def types(session: nox.Session) -> None:
     """Check the types with two strict checkers, and that both reject every marked misuse."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     install(session, "test", *tools("nox", "numba", "pyright", "pytest-benchmark", "scipy-stubs", "types-jsonschema"))
     session.run("mypy")
     session.run("pyright")
@@ -118,6 +118,7 @@ def types(session: nox.Session) -> None:
 @nox.session
 def lint(session: nox.Session) -> None:
     """Check style and layout of the code."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     session.install(*tools("ruff"))
     session.run("ruff", "check", ".")
     session.run("ruff", "format", "--check", ".")
@@ -126,6 +127,7 @@ def lint(session: nox.Session) -> None:
 @nox.session
 def docs(session: nox.Session) -> None:
     """Build the manual: every warning and every reference without a target is an error."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     install(session, "docs")
     target = session.create_tmp()
     session.run(
@@ -150,6 +152,7 @@ sys.exit(bool(bad or not pages))
 @nox.session
 def package(session: nox.Session) -> None:
     """Build the archives, look into them, and use the wheel from an empty environment outside this folder."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     session.install(*tools("build", "check-wheel-contents", "twine"))
     target = Path(session.create_tmp()) / "dist"
     shutil.rmtree(target, ignore_errors=True)
@@ -191,6 +194,7 @@ print("fourthrank", fourthrank.__version__, "imported from its wheel,", len(file
 )
 def matrix(session: nox.Session, numpy: str | None) -> None:
     """Run the tests on every supported pair of Python and numpy (not in the default set)."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     install(session, "test", numpy)
     run_tests(session)
 
@@ -198,6 +202,7 @@ def matrix(session: nox.Session, numpy: str | None) -> None:
 @nox.session
 def benchmarks(session: nox.Session) -> None:
     """Measure against hand-written code (not in the default set)."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     install(session, "test", *tools("numba", "pytest-benchmark"))
     arguments = session.posargs or ["--benchmark-group-by=group", "--benchmark-columns=median,ops,rounds"]
     session.run("python", "-m", "pytest", "tests/benchmarks", *arguments, env=ONE_THREAD)
@@ -206,6 +211,7 @@ def benchmarks(session: nox.Session) -> None:
 @nox.session
 def mutation(session: nox.Session) -> None:
     """Change the code in small ways and count the changes that no test notices (not in the default set)."""
+    session.chdir(ROOT)  # a session starts in the folder of this file
     install(session, "test", *tools("cosmic-ray"))
     store = str(Path(session.create_tmp()) / "mutation.sqlite")
     session.run("cosmic-ray", "init", "pyproject.toml", store, "--force")
