@@ -5,7 +5,7 @@ itself at a few thousand items. The size is fixed, so that nothing grows with a 
 """
 
 import threading
-from collections.abc import Iterator
+from collections.abc import Generator
 from contextlib import contextmanager
 from typing import Final
 
@@ -26,7 +26,7 @@ _kept: Final = _Kept()
 
 
 @contextmanager
-def scratch() -> Iterator[NDArray[np.float64]]:
+def scratch() -> Generator[NDArray[np.float64]]:
     """Lend the thread's array of shape (COMPONENTS, BLOCK_ITEMS); its contents are arbitrary."""
     memory = _kept.memory
     if memory is None:
