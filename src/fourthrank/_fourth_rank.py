@@ -80,9 +80,8 @@ class FourthRank(Quantity):
         if check:
             check_finite(array, name, 2, notation.label_places)
         held = passage(notation, _mandel.WORKING).matrix(widen(array), cls._rows, cls._columns)
-        if check and not symmetrize:
-            _check_major(held, tolerance, name, notation)
-        return cls._hold(_mandel.symmetric_part(held))
+        exact = check and not symmetrize and _check_major(held, tolerance, name, notation)
+        return cls._hold(held if exact else _mandel.symmetrize(held))
 
     @classmethod
     def from_tensor(
@@ -123,9 +122,8 @@ class FourthRank(Quantity):
             check_finite(array, name, 4, label_indices)
             check_minor(array, name)
         held = _mandel.WORKING.pack_map(widen(array), rows=cls._rows, columns=cls._columns, check=False)
-        if check and not symmetrize:
-            _check_major(held, tolerance, name, _mandel.WORKING)
-        return cls._hold(_mandel.symmetric_part(held))
+        exact = check and not symmetrize and _check_major(held, tolerance, name, _mandel.WORKING)
+        return cls._hold(held if exact else _mandel.symmetrize(held))
 
     @classmethod
     def from_triangle(cls, triangle: ArrayLike, notation: Notation, *, by: By, check: bool = True) -> Self:
@@ -262,8 +260,8 @@ class FourthRank(Quantity):
 
     def _inverted(self) -> Inexact:
         inverse, condition = _mandel.invert(self._held)
-        bad = condition > _LARGEST_CONDITION
-        if bad.any():
+        if not condition.max(initial=0.0) <= _LARGEST_CONDITION:
+            bad = ~(condition <= _LARGEST_CONDITION)
             member = tuple(map(int, np.unravel_index(int(bad.argmax()), bad.shape)))
             raise AdmissibilityError(
                 f"{self._name()}{member_text(member)} is singular to working precision: its condition number is "
@@ -286,8 +284,11 @@ def _require_complete(notation: Notation) -> None:
         )
 
 
-def _check_major(held: Inexact, rtol: float, name: str, notation: Notation) -> None:
-    """Raise `SymmetryError` unless t_ijkl = t_klij; `notation` is the one in which the caller knows the matrix."""
+def _check_major(held: Inexact, rtol: float, name: str, notation: Notation) -> bool:
+    """Raise `SymmetryError` unless t_ijkl = t_klij, and return whether that holds exactly.
+
+    `notation` is the one in which the caller knows the matrix.
+    """
     pairs, labels = _mandel.WORKING.ordering.pairs, _mandel.WORKING.ordering.labels()
 
     def describe(k: int) -> str:
@@ -299,10 +300,10 @@ def _check_major(held: Inexact, rtol: float, name: str, notation: Notation) -> N
             " values in Mandel form)"
         )
 
-    check_equal_components(
+    return check_equal_components(
         held.reshape(*held.shape[:-2], 36),
-        6 * _ROWS + _COLUMNS,
-        6 * _COLUMNS + _ROWS,
+        _UPPER,
+        _LOWER,
         rtol,
         describe,
         "the usual cause is another shear factor or a misread entry; symmetrize=True averages the two",
@@ -310,3 +311,4 @@ def _check_major(held: Inexact, rtol: float, name: str, notation: Notation) -> N
 
 
 _ROWS, _COLUMNS = np.triu_indices(6, 1)
+_UPPER, _LOWER = 6 * _ROWS + _COLUMNS, 6 * _COLUMNS + _ROWS

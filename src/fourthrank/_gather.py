@@ -3,12 +3,14 @@
 from collections.abc import Sequence
 from fractions import Fraction
 from math import isqrt, prod
-from typing import Any
+from typing import Any, Final
 
 import numpy as np
 from numpy.typing import NDArray
 
-from ._arrays import BLOCK_ITEMS, Inexact, take_out
+from ._arrays import Inexact, blocks, take_out
+
+_TOGETHER: Final = 16
 
 
 class Gather:
@@ -30,7 +32,7 @@ class Gather:
         The common sign of the factors.
     """
 
-    __slots__ = ("_factors", "_index", "_sign", "_squares", "_trivial", "_zeros", "source", "target")
+    __slots__ = ("_factors", "_index", "_sign", "_squares", "_trivial", "_width", "_zeros", "source", "target")
 
     def __init__(
         self,
@@ -42,6 +44,7 @@ class Gather:
     ) -> None:
         self.source = source
         self.target = target
+        self._width = prod(source)
         self._index = np.array([0 if i is None else i for i in index], dtype=np.intp)
         self._zeros = np.array([k for k, i in enumerate(index) if i is None], dtype=np.intp)
         self._squares = tuple(squares)
@@ -51,28 +54,42 @@ class Gather:
 
     def __call__(self, array: Inexact, out: NDArray[Any] | None = None) -> Inexact:
         """Apply the map to an array whose trailing shape is `source`; the result is a new array, or `out`."""
-        batch = array.shape[: array.ndim - len(self.source)]
-        if out is not None:
-            take_out(out, batch + self.target, array.dtype)
-        flat = array.reshape(-1, prod(self.source))
+        shape = array.shape[: array.ndim - len(self.source)] + self.target
         factors = None if self._trivial else self._rounded(array.dtype)
-        if out is None:
-            result = np.empty((len(flat), len(self._index)), array.dtype)
-            self._fill(flat, factors, result)
-            return result.reshape(batch + self.target)
-        if out.flags.c_contiguous and out.dtype == array.dtype and not np.may_share_memory(array, out):
-            self._fill(flat, factors, out.reshape(-1, len(self._index)))
-        else:
-            out[...] = self(array)
-        return out
+        if out is not None:
+            take_out(out, shape, array.dtype)
+            if not out.flags.c_contiguous or out.dtype != array.dtype or np.may_share_memory(array, out):
+                out[...] = self(array)
+                return out
+        elif array.size == self._width and not len(self._zeros):
+            # A single item, with as few calls as can be.
+            single: Inexact = array.reshape(-1).take(self._index)
+            if factors is not None:
+                single *= factors
+            return single.reshape(shape)
+        result = np.empty(shape, array.dtype) if out is None else out
+        self._fill(array.reshape(-1, self._width), factors, result.reshape(-1, len(self._index)))
+        return result
+
+    def write_components(self, components: Inexact, out: Inexact) -> None:
+        """Apply the map to the items of a block with its components first, (n, m), and write them as rows of `out`."""
+        picked = components.take(self._index, axis=0)
+        if not self._trivial:
+            picked *= self._rounded(components.dtype)[:, None]
+        np.copyto(out, picked.T)
 
     def _fill(self, flat: Inexact, factors: NDArray[Any] | None, result: Inexact) -> None:
-        for start in range(0, len(flat), BLOCK_ITEMS):
-            block = result[start : start + BLOCK_ITEMS]
+        width = len(self._index)
+        for part in blocks(len(flat), max(width, self._width)):
+            block = result[part]
             # mode="clip" lets take write straight into `out`; the index is in range by construction.
-            flat[start : start + BLOCK_ITEMS].take(self._index, axis=1, mode="clip", out=block)
+            flat[part].take(self._index, axis=1, mode="clip", out=block)
             if factors is not None:
-                block *= factors
+                # Several items at a time: numpy's loop over a handful of components is slow.
+                whole = len(block) // _TOGETHER * _TOGETHER
+                many = block[:whole].reshape(-1, _TOGETHER * width)
+                many *= np.tile(factors, _TOGETHER)
+                block[whole:] *= factors
             if len(self._zeros):
                 block[:, self._zeros] = 0.0
 

@@ -5,7 +5,7 @@ from typing import Any, Final
 import numpy as np
 from numpy.typing import NDArray
 
-from ._arrays import BLOCK_ITEMS, Inexact
+from ._arrays import Inexact, blocks
 from ._scratch import scratch
 from ._turning import symmetric_part
 
@@ -25,8 +25,7 @@ def invert(matrix: Inexact) -> tuple[Inexact, NDArray[np.floating[Any]]]:
     if len(rows) < _FEW or matrix.dtype != np.float64:
         return _invert_few(matrix)
     inverse, bound = np.empty(rows.shape), np.empty(len(rows))
-    for start in range(0, len(rows), BLOCK_ITEMS):
-        block = slice(start, start + BLOCK_ITEMS)
+    for block in blocks(len(rows), 36):
         _invert_positive(rows[block], inverse[block], bound[block])
     # What is not positive definite, nearly singular or not finite needs another way.
     rest = ~(bound <= _SAFE_CONDITION)
@@ -37,8 +36,9 @@ def invert(matrix: Inexact) -> tuple[Inexact, NDArray[np.floating[Any]]]:
 
 def _invert_few(matrix: Inexact) -> tuple[Inexact, NDArray[np.floating[Any]]]:
     inverse = symmetric_part(_invert_complex(matrix) if matrix.dtype.kind == "c" else _invert_real(matrix))
-    condition = _norm(matrix) * _norm(inverse)
-    return inverse, np.where(np.isnan(condition), np.inf, condition)
+    condition = np.asarray(np.sqrt(_square(matrix) * _square(inverse)))
+    condition[np.isnan(condition)] = np.inf
+    return inverse, condition
 
 
 def _invert_real(matrix: Inexact) -> Inexact:
@@ -58,10 +58,10 @@ def _invert_real(matrix: Inexact) -> Inexact:
     return product
 
 
-def _norm(matrix: Inexact) -> NDArray[np.floating[Any]]:
+def _square(matrix: Inexact) -> NDArray[np.floating[Any]]:
     # Faster than linalg.norm, which counts for a single matrix.
-    square = np.einsum("...ij,...ij->...", matrix, matrix.conj())
-    return np.asarray(np.sqrt(square.real))
+    square = np.einsum("...ij,...ij->...", matrix, matrix.conj() if matrix.dtype.kind == "c" else matrix)
+    return np.asarray(square.real)
 
 
 def _invert_complex(matrix: Inexact) -> Inexact:

@@ -6,7 +6,9 @@ tensors, and a rotation is an orthogonal 6x6 matrix. Nothing here checks its inp
 
 from typing import Final
 
-from ._arrays import Inexact
+import numpy as np
+
+from ._arrays import Inexact, blocks
 from ._inversion import invert
 from ._turning import rotate_matrix, rotation_matrices, symmetric_part, turn_matrices, turn_vectors
 from .notation import Notation
@@ -20,12 +22,26 @@ __all__ = [
     "rotate_matrix",
     "rotation_matrices",
     "symmetric_part",
+    "symmetrize",
     "turn_matrices",
     "turn_vectors",
 ]
 
 WORKING: Final = Notation.mandel(VOIGT_ORDER)
 """The notation of the working form."""
+
+
+def symmetrize(matrix: Inexact) -> Inexact:
+    """Return the symmetric part of a contiguous array that nobody else needs; large batches change in place."""
+    if matrix.size < _FEW:
+        return symmetric_part(matrix)
+    flat = matrix.reshape(-1, 6, 6)
+    for part in blocks(len(flat), 36):
+        np.copyto(flat[part], symmetric_part(flat[part]))
+    return matrix
+
+
+_FEW: Final = 36 * 100
 
 
 def apply(matrix: Inexact, vector: Inexact) -> Inexact:

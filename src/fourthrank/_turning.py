@@ -12,7 +12,8 @@ from typing import Final
 import numpy as np
 from numpy.typing import NDArray
 
-from ._arrays import BLOCK_ITEMS, Inexact
+from ._arrays import BLOCK_ITEMS, Inexact, blocks
+from ._gather import Gather
 from ._scratch import scratch
 from .ordering import VOIGT_ORDER
 
@@ -70,23 +71,35 @@ def symmetric_part(matrix: Inexact) -> Inexact:
     return result
 
 
-def rotation_matrices(rotations: Inexact) -> Inexact:
-    """Return the orthogonal 6x6 matrices K of rotations R: v' = K v is sigma'_ij = R_ik R_jl sigma_kl."""
+def rotation_matrices(rotations: Inexact, gather: Gather | None = None) -> Inexact:
+    """Return the orthogonal 6x6 matrices K of rotations R: v' = K v is sigma'_ij = R_ik R_jl sigma_kl.
+
+    With `gather` they are written in another notation, on the way.
+    """
     batch = rotations.shape[:-2]
     rows = rotations.reshape(-1, 9)
-    if len(rows) < _FEW_ROTATIONS or rows.dtype != np.float64:
+    if len(rows) < _FEW_ROTATIONS:
         products = (rows[:, :, None] * rows[:, None, :]).reshape(-1, 81)
-        few: Inexact = products @ _FOLD.astype(rows.dtype, copy=False)
-        return few.reshape(*batch, 6, 6)
+        few: Inexact = (products @ _FOLD).reshape(*batch, 6, 6)
+        return few if gather is None else gather(few)
     result = np.empty((*batch, 6, 6))
     flat = result.reshape(-1, 36)
     with scratch() as memory:
-        for start in range(0, len(rows), BLOCK_ITEMS):
-            part = rows[start : start + BLOCK_ITEMS]
-            k = memory[:36, : len(part)]
-            _fill_rotation(part, k, memory[36:, : len(part)])
-            np.copyto(flat[start : start + BLOCK_ITEMS], k.T)
+        for part in blocks(len(rows), 36):
+            turns, out = rows[part], flat[part]
+            k = memory[:36, : len(turns)]
+            _fill_rotation(turns, k, memory[36:, : len(turns)])
+            if gather is None:
+                np.copyto(out, k.T)
+            else:
+                gather.write_components(k, out)
     return result
+
+
+def _rotation_matrix(rotation: NDArray[np.float64]) -> NDArray[np.float64]:
+    """Return the 6x6 matrix of a single rotation."""
+    row = rotation.reshape(9, 1)
+    return np.asarray(((row * row.T).reshape(81) @ _FOLD).reshape(6, 6))
 
 
 def rotate_matrix(matrix: Inexact, rotation: Inexact) -> Inexact:
@@ -96,6 +109,8 @@ def rotate_matrix(matrix: Inexact, rotation: Inexact) -> Inexact:
 
 def turn_matrices(matrix: Inexact, rotations: NDArray[np.float64]) -> Inexact:
     """Return the symmetric 6x6 matrices of turned tensors, exactly symmetric; batches broadcast."""
+    if rotations.ndim == 2 and matrix.ndim == 2:  # one by one, with as few calls as can be
+        return rotate_matrix(matrix, _rotation_matrix(rotations))
     batch = np.broadcast_shapes(matrix.shape[:-2], rotations.shape[:-2])
     count = prod(batch)
     if count < (_FEW_MATRICES if rotations.size == 9 else _FEW_PAIRS):
@@ -104,7 +119,7 @@ def turn_matrices(matrix: Inexact, rotations: NDArray[np.float64]) -> Inexact:
     # The real and the imaginary part turn on their own; both are views.
     for source, target in real_parts(matrix, result):
         if rotations.size == 9:
-            turning = turning_matrix(rotation_matrices(rotations.reshape(3, 3)))
+            turning = turning_matrix(_rotation_matrix(rotations))
             turn_by_one(source.reshape(-1, 36), turning, target.reshape(-1, 36))
         else:
             _turn_by_many(source, rotations, target.reshape(-1, 36), batch)
@@ -113,11 +128,11 @@ def turn_matrices(matrix: Inexact, rotations: NDArray[np.float64]) -> Inexact:
 
 def turn_vectors(vector: Inexact, rotations: NDArray[np.float64]) -> Inexact:
     """Return the vectors of turned second-order tensors; batches broadcast."""
+    if rotations.ndim == 2:
+        turned: Inexact = vector @ _rotation_matrix(rotations).T
+        return turned
     batch = np.broadcast_shapes(vector.shape[:-1], rotations.shape[:-2])
     count = prod(batch)
-    if rotations.size == 9:
-        turned: Inexact = vector @ rotation_matrices(rotations.reshape(3, 3)).T
-        return turned.reshape(*batch, 6)
     if count < _FEW_ROTATIONS:
         few: Inexact = (rotation_matrices(rotations) @ vector[..., None])[..., 0]
         return few
@@ -126,14 +141,13 @@ def turn_vectors(vector: Inexact, rotations: NDArray[np.float64]) -> Inexact:
         flat, read = target.reshape(-1, 6), _reader(source, 6, batch)
         turns = _reader(rotations, 9, batch)
         with scratch() as memory:
-            for start in range(0, count, BLOCK_ITEMS):
-                stop = min(start + BLOCK_ITEMS, count)
-                m = stop - start
+            for part in blocks(count, 36):
+                m = part.stop - part.start
                 k, old, new = memory[:36, :m], memory[36:42, :m], memory[42:48, :m]
-                _fill_rotation(turns(start, stop), k, memory[48:, :m])
-                np.copyto(old, read(start, stop).T)
+                _fill_rotation(turns(part), k, memory[48:, :m])
+                np.copyto(old, read(part).T)
                 np.einsum("ijn,jn->in", k.reshape(6, 6, m), old, out=new)
-                np.copyto(flat[start:stop], new.T)
+                np.copyto(flat[part], new.T)
     return result
 
 
@@ -153,16 +167,15 @@ def turn_by_one(rows: Inexact, turning: Inexact, out: Inexact) -> None:
     """Write the turned matrices of symmetric ones, both with rows of 36 components; real arrays only."""
     with scratch() as memory:
         pool = memory.reshape(-1).view(rows.dtype)[: 42 * BLOCK_ITEMS].reshape(2, BLOCK_ITEMS, 21)
-        for start in range(0, len(rows), BLOCK_ITEMS):
-            part = rows[start : start + BLOCK_ITEMS]
-            old, new = pool[:, : len(part)]
+        for part in blocks(len(rows), 36):
+            old, new = pool[:, : part.stop - part.start]
             # mode="clip" lets take write straight into `out`; the indices are in range by construction.
-            part.take(_UPPER, axis=1, mode="clip", out=old)
+            rows[part].take(_UPPER, axis=1, mode="clip", out=old)
             np.matmul(old, turning, out=new)
             if out.flags.c_contiguous:
-                new.take(_SQUARE, axis=1, mode="clip", out=out[start : start + BLOCK_ITEMS])
+                new.take(_SQUARE, axis=1, mode="clip", out=out[part])
             else:
-                out[start : start + BLOCK_ITEMS] = new[:, _SQUARE]
+                out[part] = new[:, _SQUARE]
 
 
 def real_parts(source: Inexact, target: Inexact) -> list[tuple[Inexact, Inexact]]:
@@ -177,22 +190,21 @@ def _turn_by_many(matrix: Inexact, rotations: NDArray[np.float64], out: Inexact,
     read, turns = _reader(matrix, 36, batch), _reader(rotations, 9, batch)
     single = matrix.size == 36
     with scratch() as memory:
-        for start in range(0, len(out), BLOCK_ITEMS):
-            stop = min(start + BLOCK_ITEMS, len(out))
-            m = stop - start
+        for part in blocks(len(out), 36):
+            m = part.stop - part.start
             rotation, old, new, vector = (memory[first:last, :m] for first, last in _PARTS)
             # `new` is free until the products are made.
-            _fill_rotation(turns(start, stop), rotation, new)
+            _fill_rotation(turns(part), rotation, new)
             k, c, turned = rotation.reshape(6, 6, m), old.reshape(6, 6, m), new.reshape(6, 6, m)
             if single:
                 np.matmul(matrix.reshape(6, 6), k, out=c)
             else:
-                np.copyto(old, read(start, stop).T)
+                np.copyto(old, read(part).T)
             for i in range(6):
                 product = c[i] if single else np.einsum("qn,qpn->pn", k[i], c, out=vector)
                 np.einsum("pn,jpn->jn", product, k[: i + 1], out=turned[i, : i + 1])
                 turned[:i, i] = turned[i, :i]
-            np.copyto(out[start:stop], new.T)
+            np.copyto(out[part], new.T)
 
 
 _PARTS: Final = ((0, 36), (36, 72), (72, 108), (108, 114))
@@ -216,12 +228,12 @@ def _fill_rotation(rows: NDArray[np.float64], k: NDArray[np.float64], spare: NDA
     full[3:, 3:] += cross
 
 
-def _reader(array: Inexact, width: int, batch: tuple[int, ...]) -> Callable[[int, int], Inexact]:
-    """Return a function that gives the rows (m, width) of an array for a range of members of a broadcast batch."""
+def _reader(array: Inexact, width: int, batch: tuple[int, ...]) -> Callable[[slice], Inexact]:
+    """Return a function that gives the rows (m, width) of an array for some members of a broadcast batch."""
     own = array.shape[: array.ndim - (1 if width == 6 else 2)]
     rows = array.reshape(-1, width)
     if len(rows) == prod(batch):
-        return lambda start, stop: rows[start:stop]
+        return lambda part: rows[part]
     # One index for each member, and not a copy of the broadcast array.
     place = np.broadcast_to(np.arange(len(rows)).reshape(own), batch).reshape(-1)
-    return lambda start, stop: rows[place[start:stop]]
+    return lambda part: rows[place[part]]

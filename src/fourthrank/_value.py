@@ -4,7 +4,7 @@ from abc import abstractmethod
 from collections.abc import Callable, Sequence
 from numbers import Number
 from types import EllipsisType
-from typing import Any, ClassVar, NoReturn, Self, TypeAlias, TypeVar, cast
+from typing import Any, ClassVar, Final, NoReturn, Self, TypeAlias, TypeVar, cast
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -19,6 +19,8 @@ from .rotation.matrices import RotationLike, take_rotation
 Index: TypeAlias = (
     int | slice | EllipsisType | Sequence[int] | Sequence[bool] | NDArray[np.integer[Any]] | NDArray[np.bool_] | None
 )
+
+_DOUBLE: Final = np.dtype(np.float64)
 
 
 class Quantity(Frozen):
@@ -109,7 +111,7 @@ class Quantity(Frozen):
         self._check_kind(other, "other")
         return bool(((self - other).norm() <= atol + rtol * other.norm()).all())
 
-    def rotate(self, R: RotationLike, *, allow_reflection: bool = False) -> Self:
+    def rotate(self, R: RotationLike, *, allow_reflection: bool = False, check: bool = True) -> Self:
         """Turn the body by R; the axes stay.
 
         A vector of the body goes from v to R v, so that second-order components become ``R_ik R_jl t_kl`` and
@@ -121,6 +123,8 @@ class Quantity(Frozen):
             Rotations; their batch broadcasts against that of the tensors.
         allow_reflection : bool
             Whether R may be a reflection; a tensor of even rank cannot tell R from -R.
+        check : bool
+            False skips all checks of R but that of its shape, for trusted rotations in a hot loop.
 
         Returns
         -------
@@ -134,9 +138,9 @@ class Quantity(Frozen):
         ShapeError
             If the batches do not broadcast.
         """
-        return self._turn(take_rotation(R, "R", allow_reflection=allow_reflection), "R")
+        return self._turn(take_rotation(R, "R", allow_reflection=allow_reflection, check=check), "R")
 
-    def in_axes(self, A: RotationLike, *, allow_reflection: bool = False) -> Self:
+    def in_axes(self, A: RotationLike, *, allow_reflection: bool = False, check: bool = True) -> Self:
         """Return the components along new axes, the rows of A; the body stays.
 
         The new second-order components are ``A_ik A_jl t_kl``, and the fourth-order ones
@@ -148,6 +152,8 @@ class Quantity(Frozen):
             Sets of axes, one axis a row, in the present axes; their batch broadcasts against that of the tensors.
         allow_reflection : bool
             Whether the axes may be left-handed; a tensor of even rank cannot tell.
+        check : bool
+            False skips all checks of A but that of its shape, for trusted axes in a hot loop.
 
         Returns
         -------
@@ -161,7 +167,7 @@ class Quantity(Frozen):
         ShapeError
             If the batches do not broadcast.
         """
-        return self._turn(take_rotation(A, "A", allow_reflection=allow_reflection), "A")
+        return self._turn(take_rotation(A, "A", allow_reflection=allow_reflection, check=check), "A")
 
     def scaled(self, factor: ArrayLike) -> Self:
         """Return each tensor of the batch times its own factor.
@@ -326,6 +332,8 @@ def working(quantity: Quantity) -> Inexact:
 
 def widen(array: Inexact) -> Inexact:
     """Return `array` in the precision that value objects hold: float64, or complex128."""
+    if array.dtype is _DOUBLE:
+        return array
     return array.astype(np.complex128 if array.dtype.kind == "c" else np.float64, copy=False)
 
 

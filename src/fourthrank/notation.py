@@ -111,10 +111,12 @@ class Notation(VectorPacking, MatrixPacking, TrianglePacking):
         return cls(ordering, stress_shear=1.0, strain_shear=1.0, compression_positive=compression_positive)
 
     def __eq__(self, other: object) -> bool:
-        return self._key() == other._key() if isinstance(other, Notation) else NotImplemented
+        if not isinstance(other, Notation):
+            return NotImplemented
+        return self is other or self._key() == other._key()
 
     def __hash__(self) -> int:
-        return hash(self._key())
+        return self._hash
 
     def __repr__(self) -> str:
         sign = ", compression_positive=True" if self._compression_positive else ""

@@ -67,10 +67,11 @@ class Ordering(Frozen):
     False
     """
 
-    __slots__ = ("_pairs", "_positions")
+    __slots__ = ("_hash", "_pairs", "_positions")
 
     _pairs: tuple[Pair, ...]
     _positions: dict[Pair, int]
+    _hash: int
 
     def __init__(self, pairs: "str | Ordering | Iterable[tuple[int, int]]") -> None:
         found = pairs.pairs if isinstance(pairs, Ordering) else _read_pairs(pairs)
@@ -87,6 +88,7 @@ class Ordering(Frozen):
             raise OrderingError(f"'{_text(found)}' has {len(found)} of the six pairs, without {missing}; {_EXPECTED}")
         object.__setattr__(self, "_pairs", found)
         object.__setattr__(self, "_positions", positions)
+        object.__setattr__(self, "_hash", hash((Ordering, found)))
 
     @property
     def pairs(self) -> tuple[Pair, ...]:
@@ -217,10 +219,10 @@ class Ordering(Frozen):
         return np.array([self._positions[pair] for pair in other._pairs], dtype=np.intp)
 
     def __eq__(self, other: object) -> bool:
-        return self._pairs == other._pairs if isinstance(other, Ordering) else NotImplemented
+        return self is other or self._pairs == other._pairs if isinstance(other, Ordering) else NotImplemented
 
     def __hash__(self) -> int:
-        return hash((Ordering, self._pairs))
+        return self._hash
 
     def __str__(self) -> str:
         return _text(self._pairs)

@@ -337,8 +337,11 @@ class Translator(Frozen):
 
     def matrix(self, array: Inexact, rows: Side, columns: Side, out: NDArray[Any] | None = None) -> Inexact:
         """Translate checked matrices; for use inside the library."""
-        gather = self._gathers.get((rows, columns)) or self._make_matrix_gather(rows, columns)
-        return gather(array, out)
+        return self.matrix_gather(rows, columns)(array, out)
+
+    def matrix_gather(self, rows: Side, columns: Side) -> Gather:
+        """Return the precomputed map of matrices; for use inside the library."""
+        return self._gathers.get((rows, columns)) or self._make_matrix_gather(rows, columns)
 
     def _make_vector_gather(self, kind: Side) -> Gather:
         index = [self._source.ordering.position(*pair) for pair in self._target.ordering.pairs]

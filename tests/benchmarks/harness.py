@@ -13,7 +13,7 @@ import tracemalloc
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
-from typing import Any, Final, cast
+from typing import Any, Final
 
 import numpy as np
 from numpy.typing import NDArray
@@ -159,13 +159,16 @@ def _arrays_of(result: Any) -> list[NDArray[Any]]:
     """Return the arrays that a result consists of: itself, or those that an object holds."""
     if isinstance(result, np.ndarray):
         return [result]
-    if isinstance(result, tuple):
-        parts = cast(tuple[Any, ...], result)
-        return [array for part in parts for array in _arrays_of(part)]
+    if type(result) is tuple:
+        return _arrays_of_all(result)
     names = {name for kind in type(result).__mro__ for name in getattr(kind, "__slots__", ())}
     names |= set(getattr(result, "__dict__", {}))
     held = (getattr(result, name, None) for name in sorted(names))
-    return [array for part in held if isinstance(part, (np.ndarray, tuple)) for array in _arrays_of(part)]
+    return _arrays_of_all([part for part in held if isinstance(part, (np.ndarray, tuple))])
+
+
+def _arrays_of_all(parts: Sequence[Any]) -> list[NDArray[Any]]:
+    return [array for part in parts for array in _arrays_of(part)]
 
 
 COLUMNS: Final = ("einsum", "einsum, optimized", "by hand")
@@ -245,5 +248,6 @@ def machine() -> str:
     )
     return (
         f"Measured on {platform.machine()} ({chip or 'processor not known'}), {cores or 'some'} cores shared with "
-        f"other work, {platform.system()}, Python {platform.python_version()}, numpy {np.__version__} with one BLAS thread."
+        f"other work, {platform.system()}, Python {platform.python_version()}, numpy {np.__version__} with one BLAS "
+        "thread."
     )

@@ -24,7 +24,7 @@ _SQUARE_OF_WEIGHT: Final = {
 class Weights(Frozen):
     """An ordering with a weight for the shear components of stress, one for those of strain, and a sign."""
 
-    __slots__ = ("_compression_positive", "_gathers", "_ordering", "_strain_shear", "_stress_shear")
+    __slots__ = ("_compression_positive", "_gathers", "_hash", "_ordering", "_strain_shear", "_stress_shear")
 
     _ordering: Ordering
     _stress_shear: float
@@ -32,6 +32,7 @@ class Weights(Frozen):
     _compression_positive: bool
     # Index tables, made on first use; a race between threads makes the same table twice and loses nothing.
     _gathers: dict[tuple[str, ...], Gather]
+    _hash: int
 
     def __init__(
         self, ordering: Ordering, *, stress_shear: float, strain_shear: float, compression_positive: bool = False
@@ -45,6 +46,8 @@ class Weights(Frozen):
         object.__setattr__(self, "_strain_shear", _read_weight("strain_shear", strain_shear))
         object.__setattr__(self, "_compression_positive", compression_positive)
         object.__setattr__(self, "_gathers", {})
+        key = (ordering, self._stress_shear, self._strain_shear, compression_positive)
+        object.__setattr__(self, "_hash", hash(key))
 
     @property
     def ordering(self) -> Ordering:

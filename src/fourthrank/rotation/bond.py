@@ -129,5 +129,5 @@ def mandel_matrix(R: RotationLike, ordering: Ordering) -> NDArray[np.float64]:
 
 
 def _bond_matrix(R: RotationLike, notation: Notation, side: Side) -> NDArray[np.float64]:
-    matrices = _mandel.rotation_matrices(take_rotation(R, "R"))
-    return cast(NDArray[np.float64], passage(_mandel.WORKING, notation).matrix(matrices, side, side))
+    gather = passage(_mandel.WORKING, notation).matrix_gather(side, side)
+    return cast(NDArray[np.float64], _mandel.rotation_matrices(take_rotation(R, "R"), gather))
