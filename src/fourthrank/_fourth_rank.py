@@ -6,7 +6,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from . import _mandel
-from ._arrays import Inexact, check_equal_components, check_finite, member_text, read_tolerance, take_in
+from ._arrays import Inexact, check_finite, member_text, read_tolerance, take_in
 from ._packing import By, Side
 from ._packing.matrices import check_minor
 from ._packing.weights import label_indices
@@ -80,7 +80,7 @@ class FourthRank(Quantity):
         if check:
             check_finite(array, name, 2, notation.label_places)
         held = passage(notation, _mandel.WORKING).matrix(widen(array), cls._rows, cls._columns)
-        exact = check and not symmetrize and _check_major(held, tolerance, name, notation)
+        exact = check and not symmetrize and _mandel.check_major(held, tolerance, name, notation)
         return cls._hold(held if exact else _mandel.symmetrize(held))
 
     @classmethod
@@ -122,7 +122,7 @@ class FourthRank(Quantity):
             check_finite(array, name, 4, label_indices)
             check_minor(array, name)
         held = _mandel.WORKING.pack_map(widen(array), rows=cls._rows, columns=cls._columns, check=False)
-        exact = check and not symmetrize and _check_major(held, tolerance, name, _mandel.WORKING)
+        exact = check and not symmetrize and _mandel.check_major(held, tolerance, name, _mandel.WORKING)
         return cls._hold(held if exact else _mandel.symmetrize(held))
 
     @classmethod
@@ -282,33 +282,3 @@ def _require_complete(notation: Notation) -> None:
             "plane problems use moduli.plane_stress_stiffness, moduli.plane_strain_stiffness or moduli.Lamina, which "
             "say what is meant"
         )
-
-
-def _check_major(held: Inexact, rtol: float, name: str, notation: Notation) -> bool:
-    """Raise `SymmetryError` unless t_ijkl = t_klij, and return whether that holds exactly.
-
-    `notation` is the one in which the caller knows the matrix.
-    """
-    pairs, labels = _mandel.WORKING.ordering.pairs, _mandel.WORKING.ordering.labels()
-
-    def describe(k: int) -> str:
-        i, j = int(_ROWS[k]), int(_COLUMNS[k])
-        row, column = notation.ordering.position(*pairs[i]), notation.ordering.position(*pairs[j])
-        return (
-            f"{name} must have the major symmetry: components [{labels[i]}, {labels[j]}] and [{labels[j]}, {labels[i]}]"
-            f" (row and column {row + 1}, {column + 1} and {column + 1}, {row + 1} in the order '{notation.ordering}';"
-            " values in Mandel form)"
-        )
-
-    return check_equal_components(
-        held.reshape(*held.shape[:-2], 36),
-        _UPPER,
-        _LOWER,
-        rtol,
-        describe,
-        "the usual cause is another shear factor or a misread entry; symmetrize=True averages the two",
-    )
-
-
-_ROWS, _COLUMNS = np.triu_indices(6, 1)
-_UPPER, _LOWER = 6 * _ROWS + _COLUMNS, 6 * _COLUMNS + _ROWS

@@ -32,7 +32,7 @@ class Gather:
         The common sign of the factors.
     """
 
-    __slots__ = ("_factors", "_index", "_sign", "_squares", "_trivial", "_width", "_zeros", "source", "target")
+    __slots__ = ("_factors", "_sign", "_squares", "_trivial", "_width", "_zeros", "index", "source", "target")
 
     def __init__(
         self,
@@ -45,7 +45,7 @@ class Gather:
         self.source = source
         self.target = target
         self._width = prod(source)
-        self._index = np.array([0 if i is None else i for i in index], dtype=np.intp)
+        self.index = np.array([0 if i is None else i for i in index], dtype=np.intp)
         self._zeros = np.array([k for k, i in enumerate(index) if i is None], dtype=np.intp)
         self._squares = tuple(squares)
         self._sign = sign
@@ -55,7 +55,7 @@ class Gather:
     def __call__(self, array: Inexact, out: NDArray[Any] | None = None) -> Inexact:
         """Apply the map to an array whose trailing shape is `source`; the result is a new array, or `out`."""
         shape = array.shape[: array.ndim - len(self.source)] + self.target
-        factors = None if self._trivial else self._rounded(array.dtype)
+        factors = None if self._trivial else self.factors(array.dtype)
         if out is not None:
             take_out(out, shape, array.dtype)
             if not out.flags.c_contiguous or out.dtype != array.dtype or np.may_share_memory(array, out):
@@ -63,27 +63,27 @@ class Gather:
                 return out
         elif array.size == self._width and not len(self._zeros):
             # A single item, with as few calls as can be.
-            single: Inexact = array.reshape(-1).take(self._index)
+            single: Inexact = array.reshape(-1).take(self.index)
             if factors is not None:
                 single *= factors
             return single.reshape(shape)
         result = np.empty(shape, array.dtype) if out is None else out
-        self._fill(array.reshape(-1, self._width), factors, result.reshape(-1, len(self._index)))
+        self._fill(array.reshape(-1, self._width), factors, result.reshape(-1, len(self.index)))
         return result
 
     def write_components(self, components: Inexact, out: Inexact) -> None:
         """Apply the map to the items of a block with its components first, (n, m), and write them as rows of `out`."""
-        picked = components.take(self._index, axis=0)
+        picked = components.take(self.index, axis=0)
         if not self._trivial:
-            picked *= self._rounded(components.dtype)[:, None]
+            picked *= self.factors(components.dtype)[:, None]
         np.copyto(out, picked.T)
 
     def _fill(self, flat: Inexact, factors: NDArray[Any] | None, result: Inexact) -> None:
-        width = len(self._index)
+        width = len(self.index)
         for part in blocks(len(flat), max(width, self._width)):
             block = result[part]
             # mode="clip" lets take write straight into `out`; the index is in range by construction.
-            flat[part].take(self._index, axis=1, mode="clip", out=block)
+            flat[part].take(self.index, axis=1, mode="clip", out=block)
             if factors is not None:
                 # Several items at a time: numpy's loop over a handful of components is slow.
                 whole = len(block) // _TOGETHER * _TOGETHER
@@ -93,7 +93,8 @@ class Gather:
             if len(self._zeros):
                 block[:, self._zeros] = 0.0
 
-    def _rounded(self, dtype: np.dtype[Any]) -> NDArray[Any]:
+    def factors(self, dtype: np.dtype[Any]) -> NDArray[Any]:
+        """Return the factors, rounded to the real precision of `dtype`."""
         factors = self._factors.get(dtype.char)
         if factors is None:
             real = np.dtype(dtype.char.lower())

@@ -8,7 +8,7 @@ from typing import Final
 
 import numpy as np
 
-from ._arrays import Inexact, blocks
+from ._arrays import Inexact, blocks, check_equal_components
 from ._inversion import invert
 from ._turning import rotate_matrix, rotation_matrices, symmetric_part, turn_matrices, turn_vectors
 from .notation import Notation
@@ -17,8 +17,10 @@ from .ordering import VOIGT_ORDER
 __all__ = [
     "WORKING",
     "apply",
+    "check_major",
     "dot",
     "invert",
+    "is_symmetric",
     "rotate_matrix",
     "rotation_matrices",
     "symmetric_part",
@@ -42,6 +44,45 @@ def symmetrize(matrix: Inexact) -> Inexact:
 
 
 _FEW: Final = 36 * 100
+_ROWS, _COLUMNS = np.triu_indices(6, 1)
+_UPPER, _LOWER = 6 * _ROWS + _COLUMNS, 6 * _COLUMNS + _ROWS
+
+
+def is_symmetric(matrix: Inexact) -> bool:
+    """Tell whether 6x6 matrices equal their transposes bit for bit."""
+    rows = matrix.reshape(-1, 36)
+    return all(
+        bool((rows[part].take(_UPPER, axis=1) == rows[part].take(_LOWER, axis=1)).all())
+        for part in blocks(len(rows), 36)
+    )
+
+
+def check_major(
+    held: Inexact, rtol: float, name: str, notation: Notation, way_on: str = "symmetrize=True averages the two"
+) -> bool:
+    """Raise `SymmetryError` unless t_ijkl = t_klij, and return whether that holds exactly.
+
+    `notation` is the one in which the caller knows the matrix.
+    """
+    pairs, labels = WORKING.ordering.pairs, WORKING.ordering.labels()
+
+    def describe(k: int) -> str:
+        i, j = int(_ROWS[k]), int(_COLUMNS[k])
+        row, column = notation.ordering.position(*pairs[i]), notation.ordering.position(*pairs[j])
+        return (
+            f"{name} must have the major symmetry: components [{labels[i]}, {labels[j]}] and [{labels[j]}, {labels[i]}]"
+            f" (row and column {row + 1}, {column + 1} and {column + 1}, {row + 1} in the order '{notation.ordering}';"
+            " values in Mandel form)"
+        )
+
+    return check_equal_components(
+        held.reshape(*held.shape[:-2], 36),
+        _UPPER,
+        _LOWER,
+        rtol,
+        describe,
+        f"the usual cause is another shear factor or a misread entry; {way_on}",
+    )
 
 
 def apply(matrix: Inexact, vector: Inexact) -> Inexact:

@@ -43,7 +43,7 @@ def _rotation_fold() -> NDArray[np.float64]:
 
 _FOLD: Final = _rotation_fold()
 _UPPER_ROWS, _UPPER_COLUMNS = np.triu_indices(6)
-_UPPER: Final = 6 * _UPPER_ROWS + _UPPER_COLUMNS
+UPPER: Final = 6 * _UPPER_ROWS + _UPPER_COLUMNS
 _DIAGONAL: Final = _UPPER_ROWS == _UPPER_COLUMNS
 _FACTORS: Final = [
     6 * own + other[:, None]
@@ -62,7 +62,7 @@ def _square_places() -> NDArray[np.intp]:
     return places.reshape(36)
 
 
-_SQUARE: Final = _square_places()
+SQUARE: Final = _square_places()
 
 
 def symmetric_part(matrix: Inexact) -> Inexact:
@@ -110,7 +110,9 @@ def rotate_matrix(matrix: Inexact, rotation: Inexact) -> Inexact:
 def turn_matrices(matrix: Inexact, rotations: NDArray[np.float64]) -> Inexact:
     """Return the symmetric 6x6 matrices of turned tensors, exactly symmetric; batches broadcast."""
     if rotations.ndim == 2 and matrix.ndim == 2:  # one by one, with as few calls as can be
-        return rotate_matrix(matrix, _rotation_matrix(rotations))
+        k = _rotation_matrix(rotations)
+        product: Inexact = k @ matrix @ k.T
+        return (product + product.T) * 0.5
     batch = np.broadcast_shapes(matrix.shape[:-2], rotations.shape[:-2])
     count = prod(batch)
     if count < (_FEW_MATRICES if rotations.size == 9 else _FEW_PAIRS):
@@ -163,19 +165,28 @@ def turning_matrix(k: Inexact) -> Inexact:
     return turning
 
 
-def turn_by_one(rows: Inexact, turning: Inexact, out: Inexact) -> None:
-    """Write the turned matrices of symmetric ones, both with rows of 36 components; real arrays only."""
+def turn_by_one(
+    rows: Inexact,
+    turning: Inexact,
+    out: Inexact,
+    upper: NDArray[np.intp] = UPPER,
+    square: NDArray[np.intp] = SQUARE,
+) -> None:
+    """Write the turned matrices of symmetric ones, both with rows of 36 components; real arrays only.
+
+    `upper` says where the 21 constants stand in the rows, and `square` where those of the result go.
+    """
     with scratch() as memory:
         pool = memory.reshape(-1).view(rows.dtype)[: 42 * BLOCK_ITEMS].reshape(2, BLOCK_ITEMS, 21)
         for part in blocks(len(rows), 36):
             old, new = pool[:, : part.stop - part.start]
             # mode="clip" lets take write straight into `out`; the indices are in range by construction.
-            rows[part].take(_UPPER, axis=1, mode="clip", out=old)
+            rows[part].take(upper, axis=1, mode="clip", out=old)
             np.matmul(old, turning, out=new)
             if out.flags.c_contiguous:
-                new.take(_SQUARE, axis=1, mode="clip", out=out[part])
+                new.take(square, axis=1, mode="clip", out=out[part])
             else:
-                out[part] = new[:, _SQUARE]
+                out[part] = new[:, square]
 
 
 def real_parts(source: Inexact, target: Inexact) -> list[tuple[Inexact, Inexact]]:

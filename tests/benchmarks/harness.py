@@ -160,7 +160,7 @@ def _arrays_of(result: Any) -> list[NDArray[Any]]:
     if isinstance(result, np.ndarray):
         return [result]
     if type(result) is tuple:
-        return _arrays_of_all(result)
+        return _arrays_of_all(result)  # pyright: ignore[reportUnknownArgumentType]  # parts of any kind
     names = {name for kind in type(result).__mro__ for name in getattr(kind, "__slots__", ())}
     names |= set(getattr(result, "__dict__", {}))
     held = (getattr(result, name, None) for name in sorted(names))

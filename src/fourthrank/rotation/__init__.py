@@ -21,11 +21,13 @@ from .crystal import Setting, axes_between_settings, crystal_directions, lattice
 from .matrices import RotationLike, SupportsAsMatrix
 from .matrices import take_rotation as take_rotation  # for use inside the library
 from .measures import angle_between, nearest
+from .turn import Turn
 
 __all__ = [
     "RotationLike",
     "Setting",
     "SupportsAsMatrix",
+    "Turn",
     "about_axis",
     "angle_between",
     "axes_between_settings",

@@ -7,6 +7,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from .._arrays import Inexact, blocks, broadcast_batches, check_finite, member_text, take_in
 from .._packing.weights import label_indices
+from .._scratch import scratch
 from ..errors import DataError, RotationError
 
 __all__ = ["RotationLike", "SupportsAsMatrix"]
@@ -143,16 +144,16 @@ def _pass_quickly(rows: NDArray[np.float64], atol: float) -> bool:
 
     With r1 and r2 orthonormal and r3 = r1 x r2, each to a small t, R R^T is 1 to 6 t, and the determinant is positive.
     """
-    r = np.ascontiguousarray(rows.T)
-    first, second = r[:3], r[3:6]
-    defect = np.empty_like(r[:6])
-    with np.errstate(invalid="ignore", over="ignore"):
-        np.multiply(first[[1, 2, 0]], second[[2, 0, 1]], out=defect[:3])
-        defect[:3] -= first[[2, 0, 1]] * second[[1, 2, 0]]
-        defect[:3] -= r[6:]
-        np.einsum("in,in->n", first, first, out=defect[3])
-        np.einsum("in,in->n", second, second, out=defect[4])
-        np.einsum("in,in->n", first, second, out=defect[5])
+    m = len(rows)
+    with scratch() as memory, np.errstate(invalid="ignore", over="ignore"):
+        r, defect, product = memory[:9, :m], memory[9:15, :m], memory[15, :m]
+        np.copyto(r, rows.T)
+        for i, j, k in ((0, 1, 2), (1, 2, 0), (2, 0, 1)):
+            np.multiply(r[j], r[3 + k], out=defect[i])
+            defect[i] -= np.multiply(r[k], r[3 + j], out=product)
+            defect[i] -= r[6 + i]
+        for place, first, second in ((3, r[:3], r[:3]), (4, r[3:6], r[3:6]), (5, r[:3], r[3:6])):
+            np.einsum("in,in->n", first, second, out=defect[place])
         defect[3:5] -= 1.0
         return bool(defect.max() <= atol and defect.min() >= -atol)
 
