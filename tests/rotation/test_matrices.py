@@ -25,6 +25,16 @@ def test_rotations_pass_in_any_batch(seed: int, batch: tuple[int, ...], reflect:
     assert SIGMA.in_axes(-R if reflect else R, allow_reflection=reflect) == turned
 
 
+def test_large_batches_pass_block_by_block() -> None:
+    """Reflections on request, and matrices that are rotations just within the tolerance."""
+    R = rotation.random(2500, np.random.default_rng(9))
+    expected = SIGMA.rotate(R)
+    assert SIGMA.rotate(-R, allow_reflection=True) == expected
+    assert SIGMA.rotate(R * (1.0 + 4e-10)).allclose(expected, rtol=1e-8)
+    with pytest.raises(fr.RotationError, match=r"largest element of R R\^T - 1 is 1.2e-09"):
+        SIGMA.rotate(R * (1.0 + 6e-10))
+
+
 def test_lists_objects_and_other_dtypes_are_taken() -> None:
     """Nested lists, integers, float32, scipy's Rotation, read-only and strided arrays are all rotations."""
     R = Rotation.random(5, rng=np.random.default_rng(4))
