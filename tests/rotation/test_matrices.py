@@ -37,7 +37,7 @@ def test_large_batches_pass_block_by_block() -> None:
 
 def test_lists_objects_and_other_dtypes_are_taken() -> None:
     """Nested lists, integers, float32, scipy's Rotation, read-only and strided arrays are all rotations."""
-    R = Rotation.random(5, rng=np.random.default_rng(4))
+    R = Rotation.from_quat(np.random.default_rng(4).standard_normal((5, 4)))
     expected = SIGMA.rotate(R.as_matrix())
     assert SIGMA.rotate(R) == expected
     assert SIGMA.rotate(R.as_matrix().tolist()) == expected

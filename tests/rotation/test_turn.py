@@ -128,7 +128,7 @@ def test_turn_keeps_complex_values() -> None:
 
 def test_turn_holds_the_matrices_of_its_notation() -> None:
     """They are those of `stress_matrix` and `strain_matrix`, read-only; objects with as_matrix() are accepted."""
-    R = Rotation.random(4, rng=np.random.default_rng(3))
+    R = Rotation.from_quat(np.random.default_rng(3).standard_normal((4, 4)))
     turn = rotation.Turn(R, VOIGT)
     np.testing.assert_array_equal(turn.stress_matrix, rotation.stress_matrix(R, VOIGT))
     np.testing.assert_array_equal(turn.strain_matrix, rotation.strain_matrix(R, VOIGT))
