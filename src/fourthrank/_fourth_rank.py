@@ -77,9 +77,11 @@ class FourthRank(Quantity):
         _require_complete(notation)
         array = take_in(matrix, name, (6, 6), hint="a matrix of constants; 21 constants go through from_triangle")
         tolerance = read_tolerance(rtol, "rtol", array.dtype)
+        gather = passage(notation, _mandel.WORKING).matrix_gather(cls._rows, cls._columns)
         if check:
-            check_finite(array, name, 2, notation.label_places)
-        held = passage(notation, _mandel.WORKING).matrix(widen(array), cls._rows, cls._columns)
+            held = gather.checked(widen(array), None, lambda: check_finite(array, name, 2, notation.label_places))
+        else:
+            held = gather(widen(array))
         exact = check and not symmetrize and _mandel.check_major(held, tolerance, name, notation)
         return cls._hold(held if exact else _mandel.symmetrize(held))
 

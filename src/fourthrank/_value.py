@@ -90,8 +90,11 @@ class Quantity(Frozen):
         ndarray of float64, shape (...)
             One norm for each tensor, in the unit of the components; independent of axes and notation.
         """
-        axes = tuple(range(-len(self._core), 0))
-        return np.asarray(np.sqrt((np.abs(self._held) ** 2).sum(axis=axes)))
+        parts = (np.real(self._held), np.imag(self._held)) if self.is_complex else (self._held,)
+        component = "ij"[: len(self._core)]
+        # einsum makes no array of squares on the way.
+        squares = [np.einsum(f"...{component},...{component}->...", part, part) for part in parts]
+        return np.asarray(np.sqrt(sum(squares)))
 
     def allclose(self, other: Self, *, rtol: float = 1e-9, atol: float = 0.0) -> bool:
         """Tell whether two batches agree: ``norm(self - other) <= atol + rtol * norm(other)`` everywhere.

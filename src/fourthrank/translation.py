@@ -317,23 +317,29 @@ class Translator(Frozen):
         return Translator, (self._source, self._target)
 
     def _vector(self, vector: ArrayLike, kind: Side, out: NDArray[Any] | None, check: bool) -> Inexact:
-        array = take_in(vector, f"{kind} vector", (self._source.ordering.size,))
-        if check:
-            check_finite(array, f"{kind} vector", 1, self._source.label_places)
-        return self.vector(array, kind, out)
+        name = f"{kind} vector"
+        array = take_in(vector, name, (self._source.ordering.size,))
+        gather = self.vector_gather(kind)
+        if not check:
+            return gather(array, out)
+        return gather.checked(array, out, lambda: check_finite(array, name, 1, self._source.label_places))
 
     def _matrix(
         self, matrix: ArrayLike, name: str, rows: Side, columns: Side, out: NDArray[Any] | None, check: bool
     ) -> Inexact:
         array = take_in(matrix, name, (self._source.ordering.size,) * 2)
-        if check:
-            check_finite(array, name, 2, self._source.label_places)
-        return self.matrix(array, rows, columns, out)
+        gather = self.matrix_gather(rows, columns)
+        if not check:
+            return gather(array, out)
+        return gather.checked(array, out, lambda: check_finite(array, name, 2, self._source.label_places))
 
     def vector(self, array: Inexact, kind: Side, out: NDArray[Any] | None = None) -> Inexact:
         """Translate checked vectors; for use inside the library."""
-        gather = self._gathers.get((kind,)) or self._make_vector_gather(kind)
-        return gather(array, out)
+        return self.vector_gather(kind)(array, out)
+
+    def vector_gather(self, kind: Side) -> Gather:
+        """Return the precomputed map of vectors; for use inside the library."""
+        return self._gathers.get((kind,)) or self._make_vector_gather(kind)
 
     def matrix(self, array: Inexact, rows: Side, columns: Side, out: NDArray[Any] | None = None) -> Inexact:
         """Translate checked matrices; for use inside the library."""

@@ -121,14 +121,16 @@ def measure(case: Case, size: int, work: Work) -> Row:
         once = _seconds(call, 1)
         repeats[name] = max(1, min(10_000, round(2e-4 / max(once, 1e-8))))
         total += once * repeats[name]
-    rounds = int(max(3, min(31, SECONDS / total)))
+    rounds = int(max(5, min(35, SECONDS / total)))
     times: dict[str, list[float]] = {name: [] for name in calls}
+    names = list(calls)
     gc.collect()
     gc.disable()
     try:
-        for _ in range(rounds):
-            for name, call in calls.items():
-                times[name].append(_seconds(call, repeats[name]))
+        for k in range(rounds):
+            # What ran before decides what is in the cache, so that every call has its turn in every place.
+            for name in names[k % len(names) :] + names[: k % len(names)]:
+                times[name].append(_seconds(calls[name], repeats[name]))
     finally:
         gc.enable()
     return Row(case, size, {name: statistics.median(values) for name, values in times.items()}, _peak(work.ours))

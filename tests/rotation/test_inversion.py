@@ -59,6 +59,19 @@ def test_indefinite_matrices_are_inverted_as_well(count: int) -> None:
     assert (bound >= norm(matrix) * norm(inverse) / 6.5).all()
     matrix = with_values(-values, rng)
     check_inverse(matrix, _mandel.invert(matrix)[0], 30.0)
+    # A first pivot that is nearly nothing, where elimination in order would lose everything.
+    matrix[-1] = np.eye(6)[[1, 0, 2, 3, 4, 5]] + 1e-13 * np.eye(6)
+    check_inverse(matrix, _mandel.invert(matrix)[0], 30.0)
+
+
+@pytest.mark.parametrize("count", COUNTS)
+def test_beyond_1e15_the_bound_is_the_condition_number(count: int) -> None:
+    """|M| |X| in the Frobenius norm, for the nearly singular member of a batch."""
+    matrix = np.tile(np.eye(6), (count, 1, 1))
+    matrix[-1, 5, 5] = 1e-16
+    bound = _mandel.invert(matrix)[1]
+    np.testing.assert_allclose(bound[-1], 5**0.5 * 1e16, rtol=1e-12)
+    assert (bound[:-1] <= 36.0).all()
 
 
 @pytest.mark.parametrize("count", COUNTS)
@@ -92,10 +105,11 @@ def test_unchecked_data_that_are_not_finite_have_no_inverse(count: int) -> None:
     matrix[-1, 2, 2] = np.nan
     with pytest.raises(fr.AdmissibilityError, match="singular to working precision: its condition number is inf"):
         fr.Stiffness.from_matrix(matrix, MANDEL, check=False).inverse()
-    inverse, bound = _mandel.invert(matrix)
-    assert np.isnan(inverse[-1]).all()
-    assert bound[-1] == np.inf
-    np.testing.assert_array_equal(inverse[:-1], matrix[:-1])
+    for sign in (1.0, -1.0):
+        inverse, bound = _mandel.invert(sign * matrix)
+        assert np.isnan(inverse[-1]).all()
+        assert bound[-1] == np.inf
+        np.testing.assert_array_equal(inverse[:-1], sign * matrix[:-1])
 
 
 def test_the_inverse_turns_with_the_tensor() -> None:

@@ -329,19 +329,23 @@ class MatrixPacking(Weights):
     ) -> Inexact:
         gather = self._matrix_gather(rows, columns, pack=True)
         array = take_in(tensor, name, (3, 3, 3, 3))
-        if check:
+        if not check:
+            return gather(array, out)
+
+        def refuse() -> None:
             check_finite(array, name, 4, label_indices)
             check_minor(array, name)
-        return gather(array, out)
+
+        return gather.checked(array, out, refuse, _MINOR[:2])
 
     def _unpack_fourth(
         self, matrix: ArrayLike, name: str, rows: Side, columns: Side, out: NDArray[Any] | None, check: bool
     ) -> Inexact:
         gather = self._matrix_gather(rows, columns, pack=False)
         array = take_in(matrix, name, (6, 6))
-        if check:
-            check_finite(array, name, 2, self.label_places)
-        return gather(array, out)
+        if not check:
+            return gather(array, out)
+        return gather.checked(array, out, lambda: check_finite(array, name, 2, self.label_places))
 
     def _matrix_gather(self, rows: Side, columns: Side, *, pack: bool) -> Gather:
         key = (rows, columns, "pack" if pack else "unpack")

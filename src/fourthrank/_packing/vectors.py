@@ -197,17 +197,25 @@ class VectorPacking(Weights):
 
     def _pack_second(self, tensor: ArrayLike, kind: Side, out: NDArray[Any] | None, check: bool) -> Inexact:
         array = take_in(tensor, kind, (3, 3))
-        if check:
+        if not check:
+            return self.pack_side(array, kind, out)
+        if not self._ordering.complete:
+            check_finite(array, kind, 2, label_indices)
+            self.check_lacking(array, kind)
+
+        def refuse() -> None:
             check_finite(array, kind, 2, label_indices)
             _check_symmetry(array, kind)
-            self.check_lacking(array, kind)
-        return self.pack_side(array, kind, out)
+
+        return self._vector_gather(kind, pack=True).checked(array, out, refuse, (_UPPER, _LOWER))
 
     def _unpack_second(self, vector: ArrayLike, kind: Side, out: NDArray[Any] | None, check: bool) -> Inexact:
-        array = take_in(vector, f"{kind} vector", (self._ordering.size,))
-        if check:
-            check_finite(array, f"{kind} vector", 1, self.label_places)
-        return self.unpack_side(array, kind, out)
+        name = f"{kind} vector"
+        array = take_in(vector, name, (self._ordering.size,))
+        if not check:
+            return self.unpack_side(array, kind, out)
+        gather = self._vector_gather(kind, pack=False)
+        return gather.checked(array, out, lambda: check_finite(array, name, 1, self.label_places))
 
     def pack_side(self, tensor: Inexact, kind: Side, out: NDArray[Any] | None = None) -> Inexact:
         """Pack checked tensors; for use inside the library."""
