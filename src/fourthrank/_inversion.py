@@ -10,7 +10,7 @@ from ._scratch import scratch
 from ._turning import symmetric_part
 
 _FEW: Final = 100
-"""Where LAPACK, matrix by matrix, is no slower than blocks; measured, see the page on speed."""
+"""Where LAPACK, matrix by matrix, is no slower than blocks, as measured."""
 _SAFE_CONDITION: Final = 1e15
 """Up to this bound the condition number is not worth a closer look."""
 
@@ -18,14 +18,16 @@ _SAFE_CONDITION: Final = 1e15
 def invert(matrix: Inexact) -> tuple[Inexact, NDArray[np.floating[Any]]]:
     """Return the exactly symmetric inverses X of symmetric matrices M, and bounds of their condition numbers.
 
-    The residual of a real M is a few eps times its condition number, ``|M X - 1| < 8 eps |M| |X|`` in the Frobenius
-    norm. Above 1e15 the bound is the condition number ``|M| |X|`` itself; it is infinite where M is exactly singular.
+    The residual is a few eps times the condition number, ``|M X - 1| < 8 eps |M| |X|`` in the Frobenius norm, where M is
+    real or has a positive definite real part. Above 1e15 the bound is the condition number ``|M| |X|`` itself; it is
+    infinite where M is exactly singular.
     """
     rows = matrix.reshape(-1, 6, 6)
-    if len(rows) < _FEW or matrix.dtype != np.float64:
+    real = matrix.dtype.kind != "c"
+    if real and len(rows) < _FEW:
         return _invert_few(matrix)
-    inverse, bound = np.empty(rows.shape), np.empty(len(rows))
-    for block in blocks(len(rows), 36):
+    inverse, bound = np.empty_like(rows), np.empty(len(rows))
+    for block in blocks(len(rows), 36 if real else 72):
         _invert_positive(rows[block], inverse[block], bound[block])
     # What is not positive definite, nearly singular or not finite needs another way.
     rest = ~(bound <= _SAFE_CONDITION)
@@ -60,8 +62,8 @@ def _invert_real(matrix: Inexact) -> Inexact:
 
 def _square(matrix: Inexact) -> NDArray[np.floating[Any]]:
     # Faster than linalg.norm, which counts for a single matrix.
-    square = np.einsum("...ij,...ij->...", matrix, matrix.conj() if matrix.dtype.kind == "c" else matrix)
-    return np.asarray(square.real)
+    parts = (np.real(matrix), np.imag(matrix)) if matrix.dtype.kind == "c" else (matrix,)
+    return np.asarray(sum(np.einsum("...ij,...ij->...", part, part) for part in parts))
 
 
 def _invert_complex(matrix: Inexact) -> Inexact:
@@ -72,8 +74,10 @@ def _invert_complex(matrix: Inexact) -> Inexact:
         return np.where(singular, np.nan, np.linalg.inv(np.where(singular, np.eye(6), matrix)))
 
 
-def _invert_positive(rows: NDArray[np.float64], out: NDArray[np.float64], bound: NDArray[np.float64]) -> None:
-    """Write the inverses of a block of positive definite matrices, and their traces' product; infinite where in doubt.
+def _invert_positive(rows: Inexact, out: Inexact, bound: NDArray[np.float64]) -> None:
+    """Write the inverses of a block of matrices with positive definite real parts, and bounds of the condition numbers.
+
+    The product of the traces bounds those of real matrices. The bound is infinite where the pivots are in doubt.
 
     A = L D L^T and A^-1 = M^T D^-1 M with M L = 1, components first. Sums of products take half as many passes over the
     memory as eliminations. M is found column by column, from M L = 1 and not from L M = 1: only so the residual of the
@@ -81,12 +85,13 @@ def _invert_positive(rows: NDArray[np.float64], out: NDArray[np.float64], bound:
     Algorithms, 2nd ed., section 14.2).
     """
     m = len(rows)
-    with scratch() as memory, np.errstate(all="ignore"):
+    with scratch() as plain, np.errstate(all="ignore"):
+        memory: Inexact = plain.view(rows.dtype)
         a, result = memory[:36, :m].reshape(6, 6, m), memory[36:72, :m].reshape(6, 6, m)
         pivots, inverse_pivots, products, sums = memory[72:96, :m].reshape(4, 6, m)
         for i in range(6):  # the lower triangle holds everything
             np.copyto(a[i, : i + 1], rows[:, i, : i + 1].T)
-        np.einsum("in->n", memory[:36:7, :m], out=bound)
+        trace = np.einsum("in->n", memory[:36:7, :m])
         for k in range(6):  # L below the diagonal, D in `pivots`
             column = a[k:, k]
             if k:
@@ -106,7 +111,9 @@ def _invert_positive(rows: NDArray[np.float64], out: NDArray[np.float64], bound:
             np.einsum("pn,pjn->jn", products[i:], a[i:, : i + 1], out=result[i, : i + 1])
             result[:i, i] = result[i, :i]
         np.copyto(out.reshape(m, 36), memory[36:72, :m].T)
-        np.einsum("in->n", memory[36:72:7, :m], out=sums[0])
-        bound *= sums[0]
+        if rows.dtype.kind == "c":
+            np.sqrt(_square(rows) * _square(out), out=bound)
+        else:
+            np.multiply(trace, np.einsum("in->n", memory[36:72:7, :m]), out=bound)
         # A NaN fails the comparison.
-        bound[~(pivots > 0.0).all(axis=0)] = np.inf
+        bound[~(np.real(pivots) > 0.0).all(axis=0)] = np.inf

@@ -19,7 +19,7 @@ from .ordering import VOIGT_ORDER
 
 _ROOT: Final = np.sqrt(2.0)
 
-# Where the plain products of small batches become slower than blocks; measured, see the page on speed.
+# Where the plain products of small batches become slower than blocks, as measured.
 _FEW_MATRICES: Final = 300
 _FEW_PAIRS: Final = 250
 _FEW_ROTATIONS: Final = 120
@@ -130,9 +130,11 @@ def turn_matrices(matrix: Inexact, rotations: NDArray[np.float64]) -> Inexact:
 
 def turn_vectors(vector: Inexact, rotations: NDArray[np.float64]) -> Inexact:
     """Return the vectors of turned second-order tensors; batches broadcast."""
-    if rotations.ndim == 2:
+    if rotations.size == 9:
         turned: Inexact = vector @ _rotation_matrix(rotations).T
-        return turned
+        return (
+            turned if rotations.ndim == 2 else turned.reshape((1,) * (rotations.ndim - 1 - turned.ndim) + turned.shape)
+        )
     batch = np.broadcast_shapes(vector.shape[:-1], rotations.shape[:-2])
     count = prod(batch)
     if count < _FEW_ROTATIONS:

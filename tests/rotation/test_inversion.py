@@ -75,13 +75,28 @@ def test_beyond_1e15_the_bound_is_the_condition_number(count: int) -> None:
 
 
 @pytest.mark.parametrize("count", COUNTS)
-def test_complex_moduli_are_inverted_as_well(count: int) -> None:
-    """Symmetric, not Hermitian."""
-    rng = np.random.default_rng(4)
-    storage = with_values(rng.uniform(0.5, 1.0, (count, 6)), rng)
-    matrix = storage + 0.2j * with_values(rng.uniform(0.5, 1.0, (count, 6)), rng)
-    C = fr.Stiffness.from_matrix(matrix, MANDEL)
+@given(seed=st.integers(0, 2**32), decades=st.floats(0.0, 12.0))
+def test_complex_moduli_are_inverted_as_well(count: int, seed: int, decades: float) -> None:
+    """Symmetric, not Hermitian: storage and loss moduli positive definite, to the same residual."""
+    rng = np.random.default_rng(seed)
+    storage = with_values(10.0 ** -rng.uniform(0.0, decades, (count, 6)), rng)
+    loss = with_values(10.0 ** -rng.uniform(0.0, decades, (count, 6)), rng)
+    C = fr.Stiffness.from_matrix(storage + 0.3j * loss, MANDEL)
     check_inverse(C.matrix(MANDEL), C.inverse().matrix(MANDEL), 30.0)
+
+
+def test_complex_matrices_without_a_definite_real_part_are_inverted_as_well() -> None:
+    """The general inverse takes over, symmetric all the same, and one singular member does not spoil the others."""
+    rng = np.random.default_rng(4)
+    values = rng.choice([-1.0, 1.0], (50, 6)) * rng.uniform(0.5, 1.0, (50, 6))
+    matrix = with_values(values, rng) + 1j * with_values(values, rng)
+    inverse = _mandel.invert(matrix)[0]
+    check_inverse(matrix, inverse, 300.0)
+    matrix[7] = 0.0
+    again, bound = _mandel.invert(matrix)
+    assert bound[7] == np.inf
+    assert np.isnan(again[7]).all()
+    np.testing.assert_array_equal(np.delete(again, 7, axis=0), np.delete(inverse, 7, axis=0))
 
 
 @pytest.mark.parametrize("count", COUNTS)
