@@ -18,8 +18,8 @@ _SAFE_CONDITION: Final = 1e15
 def invert(matrix: Inexact) -> tuple[Inexact, NDArray[np.floating[Any]]]:
     """Return the exactly symmetric inverses X of symmetric matrices M, and bounds of their condition numbers.
 
-    The residual is a few eps times the condition number, ``|M X - 1| < 8 eps |M| |X|`` in the Frobenius norm, where M is
-    real or has a positive definite real part. Above 1e15 the bound is the condition number ``|M| |X|`` itself; it is
+    The residual is a few eps times the condition number, ``|M X - 1| < 8 eps |M| |X|`` in the Frobenius norm, where M
+    is real or has a positive definite real part. Above 1e15 the bound is the condition number ``|M| |X|`` itself; it is
     infinite where M is exactly singular.
     """
     rows = matrix.reshape(-1, 6, 6)
