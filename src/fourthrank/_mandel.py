@@ -10,7 +10,7 @@ import numpy as np
 
 from ._arrays import Inexact, blocks, check_equal_components
 from ._inversion import invert
-from ._turning import rotate_matrix, rotation_matrices, symmetric_part, turn_matrices, turn_vectors
+from ._turning import map_vectors, rotate_matrix, rotation_matrices, symmetric_part, turn_matrices, turn_vectors
 from .notation import Notation
 from .ordering import VOIGT_ORDER
 
@@ -88,8 +88,7 @@ def check_major(
 def apply(matrix: Inexact, vector: Inexact) -> Inexact:
     """Return the matrix-vector products M_IJ v_J, broadcast over batches."""
     if matrix.ndim == 2:
-        single: Inexact = vector @ matrix.T
-        return single
+        return map_vectors(matrix, vector)
     # A third faster than matmul, which makes one small product after the other.
     result: Inexact = np.einsum("...ij,...j->...i", matrix, vector)
     return result

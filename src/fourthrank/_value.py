@@ -303,7 +303,8 @@ class Quantity(Frozen):
         return self._hold, (self._held,)
 
     def _turn(self, matrices: NDArray[np.float64], name: str) -> Self:
-        broadcast_batches(**{type(self).__name__: self.shape, name: matrices.shape[:-2]})
+        if matrices.ndim > 2:
+            broadcast_batches(**{type(self).__name__: self.shape, name: matrices.shape[:-2]})
         return self._hold(self._turned(matrices))
 
     @abstractmethod

@@ -38,7 +38,7 @@ def take_rotation(
 ) -> NDArray[np.float64]:
     """Return `R` as checked matrices: finite, orthogonal, and of determinant +1 unless reflections are allowed."""
     given = take_matrices(R, name)
-    matrices = given.astype(np.float64, copy=False)
+    matrices = given if given.dtype is _DOUBLE else given.astype(np.float64)
     if check and not _pass(matrices.reshape(-1, 9), _tolerance(given), allow_reflection):
         _refuse(given, matrices, name)
     return matrices
@@ -188,3 +188,4 @@ def _refuse(given: Inexact, matrices: NDArray[np.float64], name: str) -> NoRetur
 
 
 _FEW: Final = 16
+_DOUBLE: Final = np.dtype(np.float64)

@@ -9,7 +9,7 @@ from .. import _mandel
 from .._arrays import Inexact, Scalar, broadcast_batches, check_finite, default_rtol, take_in, take_out
 from .._frozen import Frozen
 from .._packing.weights import Side
-from .._turning import SQUARE, UPPER, turn_by_one, turn_matrices, turning_matrix
+from .._turning import SQUARE, UPPER, map_vectors, turn_by_one, turn_matrices, turning_matrix
 from ..errors import NotationError, OrderingError
 from ..notation import Notation
 from ..translation import passage
@@ -325,7 +325,7 @@ class Turn(Frozen):
         matrix = self._vectors[side]
         if array.dtype.char not in "dD":
             matrix = self._in_precision(side, array.dtype)
-        turned: Inexact = array @ matrix.T if single else np.einsum("...ij,...j->...i", matrix, array)
+        turned: Inexact = map_vectors(matrix, array) if single else np.einsum("...ij,...j->...i", matrix, array)
         if out is None:
             return turned
         out[...] = turned
