@@ -1,5 +1,6 @@
 """Symmetry classes: groups, projections, distances, axes and classification."""
 
+from .axes import AxesFit, find_axes
 from .classes import (
     Axis,
     cubic,
@@ -11,15 +12,28 @@ from .classes import (
     triclinic,
     trigonal,
 )
+from .classification import Classification, classify
+from .contractions import Contractions, contractions
+from .decomposition import Decomposition, HarmonicParts, decompose, harmonic_parts
 from .groups import Symmetry, from_generators
 from .projection import Metric
 
 __all__ = [
+    "AxesFit",
     "Axis",
+    "Classification",
+    "Contractions",
+    "Decomposition",
+    "HarmonicParts",
     "Metric",
     "Symmetry",
+    "classify",
+    "contractions",
     "cubic",
+    "decompose",
+    "find_axes",
     "from_generators",
+    "harmonic_parts",
     "isotropic",
     "monoclinic",
     "orthotropic",

@@ -33,15 +33,15 @@ def distances(
     _check_metric(metric)
     if metric == "log_euclidean":
         matrices = logarithm(matrices, name)
-    rest = _norms(matrices - project_euclidean(matrices, basis))
-    return _ratio(rest, _norms(matrices)) if relative else rest
+    rest = norms(matrices - project_euclidean(matrices, basis))
+    return ratio(rest, norms(matrices)) if relative else rest
 
 
 def shares(matrices: Inexact, basis: NDArray[np.float64]) -> NDArray[np.float64]:
     """Return the fractions of the squared norms that lie in the span of a basis; 1 for a zero tensor."""
-    whole = _norms(matrices)
-    kept = _norms(project_euclidean(matrices, basis))
-    return np.where(whole > 0.0, _ratio(kept, whole), 1.0) ** 2
+    whole = norms(matrices)
+    kept = norms(project_euclidean(matrices, basis))
+    return np.where(whole > 0.0, ratio(kept, whole), 1.0) ** 2
 
 
 def project_euclidean(matrices: Inexact, basis: NDArray[np.float64]) -> Inexact:
@@ -83,11 +83,11 @@ def _compose(values: NDArray[np.float64], vectors: NDArray[np.float64]) -> NDArr
     return np.asarray(symmetric_part((vectors * values[..., None, :]) @ vectors.swapaxes(-1, -2)))
 
 
-def _norms(matrices: Inexact) -> NDArray[np.float64]:
+def norms(matrices: Inexact) -> NDArray[np.float64]:
     return np.asarray(np.linalg.norm(matrices, axis=(-2, -1)))
 
 
-def _ratio(part: NDArray[np.float64], whole: NDArray[np.float64]) -> NDArray[np.float64]:
+def ratio(part: NDArray[np.float64], whole: NDArray[np.float64]) -> NDArray[np.float64]:
     """Return part / whole; zero where both are zero."""
     return np.divide(part, whole, out=np.zeros_like(whole), where=whole > 0.0)
 
