@@ -54,9 +54,8 @@ class SearchSpace:
 
 
 @lru_cache(maxsize=64)
-def search_space(symmetry: Symmetry) -> SearchSpace:
-    """Return the search space of a symmetry; its present axes do not matter."""
-    own = symmetry.in_axes(symmetry.axes.T)
+def search_space(own: Symmetry) -> SearchSpace:
+    """Return the search space of a symmetry in its own axes."""
     basis = constants(own.basis)
     leaving = RATES @ basis.T
     leaving = leaving - basis.T @ (basis @ leaving)
@@ -69,10 +68,15 @@ def search_space(symmetry: Symmetry) -> SearchSpace:
         free = np.where(np.abs(free) < _SAME_SPACE, 0.0, free) * np.sign(free.sum())
         equivalents = np.array([[1.0, 0.0, 0.0, 0.0], [0.0, *turns[0]]])
         starts, closeness = _directions(free[0])
-    else:
+    elif moving.any():
         equivalents = _equivalents(own, basis)
         starts = _rotations(equivalents)
-        closeness = np.abs(np.stack([multiply(e, starts) @ starts.T for e in equivalents])).max(axis=0)
+        closeness = np.zeros((len(starts), len(starts)))
+        for equivalent in equivalents:
+            np.maximum(closeness, np.abs(multiply(equivalent, starts) @ starts.T), out=closeness)
+    else:  # isotropy and no symmetry at all: every orientation is as good
+        equivalents = starts = np.array([[1.0, 0.0, 0.0, 0.0]])
+        closeness = np.ones((1, 1))
     np.fill_diagonal(closeness, -1.0)
     in_class = basis @ rotation_action(from_quaternion(starts, scalar="first"))
     return SearchSpace(
@@ -103,9 +107,7 @@ def _equivalents(own: Symmetry, basis: Array) -> Array:
     axes = np.eye(3)
     steps = about_axis(axes[:, None], np.arange(0, 360, 15), degrees=True)
     flips = np.stack([about_axis(axes[(a + 1) % 3], 180.0, degrees=True) for a in range(3)])
-    likely = [cube_rotations(), steps.reshape(-1, 3, 3), (steps @ flips[:, None]).reshape(-1, 3, 3)]
-    if not len(own.free_axes):
-        likely.append(own.rotations)
+    likely = (own.rotations, cube_rotations(), steps.reshape(-1, 3, 3), (steps @ flips[:, None]).reshape(-1, 3, 3))
     rotations = np.concatenate(likely)
     turned = basis @ rotation_action(rotations).swapaxes(-1, -2)
     outside = np.abs(turned - (turned @ basis.T) @ basis).max(axis=(-2, -1))

@@ -111,7 +111,7 @@ def find_axes(C: FourthRankT, symmetry: Symmetry) -> AxesFit[FourthRankT]:
         raise DataError(f"axes are found for real tensors, this {type(C).__name__} is complex: take .real or .imag")
     flat = held.reshape(-1, 6, 6)
     count = len(flat)
-    space = search_space(symmetry)
+    space = search_space(symmetry.own)
     anisotropic = flat - project_euclidean(flat, isotropic().basis)
     whole = norms(flat)
     quaternions = np.tile([1.0, 0.0, 0.0, 0.0], (count, 1))
@@ -124,7 +124,7 @@ def find_axes(C: FourthRankT, symmetry: Symmetry) -> AxesFit[FourthRankT]:
         quaternions[part], loose[part] = found.quaternions, found.loose
         squares[part], following[part] = found.squares, found.next_squares
     axes = from_quaternion(quaternions, scalar="first")
-    along = project_euclidean(turn_matrices(flat, axes), symmetry.in_axes(symmetry.axes.T).basis)
+    along = project_euclidean(turn_matrices(flat, axes), symmetry.own.basis)
     projection = turn_matrices(along, axes.swapaxes(-1, -2))
     distance = norms(flat - projection)
     gap = np.sqrt(following) - np.sqrt(squares)

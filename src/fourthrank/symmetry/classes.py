@@ -177,7 +177,7 @@ def triclinic() -> Symmetry:
 def _named(name: str, *generators: Generator) -> Symmetry:
     rotations = [_about(axis, fold) for axis, fold in generators if fold]
     free = [np.eye(3)[axis - 1] for axis, fold in generators if not fold]
-    return build(name, np.array(rotations).reshape(-1, 3, 3), np.array(free).reshape(-1, 3), np.eye(3))
+    return build(name, np.array(rotations).reshape(-1, 3, 3), np.array(free).reshape(-1, 3))
 
 
 def _about(axis: int, fold: int) -> NDArray[np.float64]:

@@ -245,7 +245,7 @@ def _variances(C: FourthRank, uncertainties: ArrayLike, notation: Notation | Non
 
 def _spread(fit: AxesFit[FourthRankT], variances: NDArray[np.float64]) -> NDArray[np.float64]:
     """Return trace((1 - P) S) with the projector of a class in its best axes."""
-    own = fit.symmetry.in_axes(fit.symmetry.axes.T).basis
+    own = fit.symmetry.own.basis
     inside = np.zeros(np.broadcast_shapes((*fit.distance.shape, 21), variances.shape))
     for tensor in own:  # a loop over the few tensors of the basis keeps the memory small
         inside += constants(turn_matrices(tensor, fit.axes.swapaxes(-1, -2))) ** 2

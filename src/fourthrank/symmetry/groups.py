@@ -9,6 +9,7 @@ from numpy.typing import ArrayLike, NDArray
 from .._arrays import read_only
 from .._fourth_rank import FourthRank
 from .._frozen import Frozen
+from .._mandel import turn_matrices
 from .._table import Table
 from .._value import make, working
 from ..errors import ShapeError, SymmetryError
@@ -63,7 +64,7 @@ class Symmetry(Frozen):
     True
     """
 
-    __slots__ = ("axes", "basis", "count", "free_axes", "generators", "name")
+    __slots__ = ("_own", "axes", "basis", "count", "free_axes", "generators", "name")
 
     name: str
     count: int
@@ -71,9 +72,15 @@ class Symmetry(Frozen):
     generators: NDArray[np.float64]
     free_axes: NDArray[np.float64]
     axes: NDArray[np.float64]
+    _own: "Symmetry | None"
 
     def __init__(self, *_: object, **__: object) -> None:
         raise TypeError("a Symmetry is made by the functions of fourthrank.symmetry, for example orthotropic()")
+
+    @property
+    def own(self) -> "Symmetry":
+        """The same symmetry in its own axes, before any use of `in_axes`."""
+        return self if self._own is None else self._own
 
     @property
     def rotations(self) -> NDArray[np.float64]:
@@ -194,7 +201,7 @@ class Symmetry(Frozen):
         rows = take_rotation(A, "A")
         if rows.ndim != 2:
             raise ShapeError(f"a symmetry has one set of axes, A must have shape (3, 3), got {rows.shape}")
-        return build(self.name, rows.T @ self.generators @ rows, self.free_axes @ rows, self.axes @ rows)
+        return _turned(self.own, self.axes @ rows)
 
     def contains(self, other: "Symmetry") -> bool:
         """Tell whether the group of `other` is a subgroup of this one, as far as elastic constants can tell.
@@ -265,7 +272,9 @@ class Symmetry(Frozen):
         return f"<Symmetry: {self.name}, {self.count} independent constants{turned}>"
 
     def __reduce__(self) -> tuple[object, ...]:
-        return build, (self.name, self.generators, self.free_axes, self.axes)
+        if self._own is None:
+            return build, (self.name, self.generators, self.free_axes)
+        return _turned, (self._own, self.axes)
 
     def _key(self) -> tuple[str, bytes, bytes, bytes]:
         # Adding zero makes minus zeros equal to zeros.
@@ -320,16 +329,30 @@ def from_generators(
     vectors = np.empty((0, 3)) if free_axes is None else unit_vectors(free_axes, "free_axes").reshape(-1, 3)
     if not len(vectors):
         close(generators)
-    return build(name, generators, vectors, np.eye(3))
+    return build(name, generators, vectors)
 
 
-def build(
-    name: str, generators: NDArray[np.float64], free_axes: NDArray[np.float64], axes: NDArray[np.float64]
+def build(name: str, generators: NDArray[np.float64], free_axes: NDArray[np.float64]) -> Symmetry:
+    """Return a symmetry with trusted generators, in its own axes; for use inside the library."""
+    return _make(name, generators, free_axes, np.eye(3), None)
+
+
+def _turned(own: Symmetry, axes: NDArray[np.float64]) -> Symmetry:
+    """Return a symmetry with its own axes along the rows of `axes`."""
+    return _make(own.name, axes.T @ own.generators @ axes, own.free_axes @ axes, axes, own)
+
+
+def _make(
+    name: str,
+    generators: NDArray[np.float64],
+    free_axes: NDArray[np.float64],
+    axes: NDArray[np.float64],
+    own: Symmetry | None,
 ) -> Symmetry:
-    """Return a symmetry with trusted generators; for use inside the library."""
     self = object.__new__(Symmetry)
-    basis = from_constants(fixed_space(generators, free_axes))
-    values: dict[str, object] = {"name": name, "count": len(basis), "basis": read_only(basis)}
+    # Turning is more accurate than solving again, and keeps the order of the basis.
+    basis = from_constants(fixed_space(generators, free_axes)) if own is None else turn_matrices(own.basis, axes.T)
+    values: dict[str, object] = {"name": name, "count": len(basis), "basis": read_only(basis), "_own": own}
     for key, array in (("generators", generators), ("free_axes", free_axes), ("axes", axes)):
         values[key] = read_only(np.array(array, np.float64))
     for key, value in values.items():
