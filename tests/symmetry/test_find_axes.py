@@ -163,7 +163,7 @@ def test_a_batch_goes_through_in_blocks_without_a_seam() -> None:
     C = definite((450,), 13)
     s = symmetry.trigonal(axis=3, two_fold=1)
     fit = find_axes(C, s)
-    for k in (0, 199, 200, 399, 400, 449):
+    for k in (0, 99, 100, 399, 400, 449):
         single = find_axes(C[k], s)
         assert abs(single.distance - fit.distance[k]) < 1e-13
         assert rotation.angle_between(single.axes, fit.axes[k]) < 1e-6

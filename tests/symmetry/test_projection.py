@@ -8,7 +8,19 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from fourthrank import AdmissibilityError, Compliance, DataError, Notation, Ordering, Stiffness, rotation, symmetry
+from fourthrank import (
+    AdmissibilityError,
+    Compliance,
+    DataError,
+    FourthRankError,
+    Notation,
+    NotationError,
+    Ordering,
+    ShapeError,
+    Stiffness,
+    rotation,
+    symmetry,
+)
 from fourthrank.symmetry import Symmetry
 from tests.reference import case
 
@@ -128,6 +140,51 @@ def test_distance_and_share_belong_together(s: Symmetry, shape: tuple[int, ...],
     assert np.allclose(s.share(C), 1.0 - s.distance(C) ** 2, rtol=0, atol=1e-13)
     assert np.allclose(s.distance(C, relative=False), (C - s.project(C)).norm(), rtol=1e-14, atol=0)
     assert s.distance(C).shape == s.share(C).shape == shape
+
+
+@given(SYMMETRIES, SHAPES, SEEDS, st.sampled_from(["stress", "strain"]), st.sampled_from(["stress", "strain"]))
+def test_maps_without_major_symmetry_are_projected_too(
+    s: Symmetry, shape: tuple[int, ...], seed: int, rows: Any, columns: Any
+) -> None:
+    """The tensor's average over the group for finite ones; idempotent; the symmetric part goes as a stiffness does."""
+    m = np.random.default_rng(seed).standard_normal((*shape, 6, 6))
+    sides = {"rows": rows, "columns": columns}
+    projected = s.project_map(m, VOIGT, **sides)
+    assert projected.shape == m.shape
+    assert np.allclose(s.project_map(projected, VOIGT, **sides), projected, rtol=0, atol=1e-13)
+    if not len(s.free_axes):
+        full, R = VOIGT.unpack_map(m, **sides), s.rotations
+        mean = np.einsum("nip,njq,nkr,nls,...pqrs->...ijkl", R, R, R, R, full, optimize=True) / len(R)
+        assert np.allclose(VOIGT.unpack_map(projected, **sides), mean, rtol=0, atol=1e-13)
+    both = m + m.swapaxes(-1, -2)
+    there = s.project_map(both, MANDEL, rows="stress", columns="strain")
+    assert np.allclose(there, s.project(Stiffness.from_matrix(both, MANDEL)).matrix(MANDEL), rtol=0, atol=1e-13)
+
+
+def test_free_rotations_leave_projected_maps_alone() -> None:
+    """Transverse isotropy of a map that is not symmetric: it commutes with any turn about the axis."""
+    m = np.random.default_rng(8).standard_normal((6, 6))
+    s = symmetry.transversely_isotropic(axis=3)
+    projected = s.project_map(m, MANDEL, rows="strain", columns="strain")
+    K = rotation.mandel_matrix(rotation.about_axis([0, 0, 1], 0.7), MANDEL.ordering)
+    assert np.abs(K @ projected @ K.T - projected).max() < 1e-14
+    assert projected[0, 2] != projected[2, 0]
+    complex_map = s.project_map(m + 1j * m, MANDEL, rows="strain", columns="strain")
+    assert np.allclose(complex_map, projected * (1 + 1j), rtol=1e-13, atol=1e-15)
+
+
+def test_bad_maps_are_refused() -> None:
+    """No notation, an incomplete one, no 6x6 matrix, NaN."""
+    sides: dict[str, Any] = {"rows": "strain", "columns": "strain"}
+    s = symmetry.cubic()
+    with pytest.raises(NotationError, match="must be a Notation"):
+        s.project_map(np.eye(6), "voigt", **sides)  # type: ignore[arg-type]
+    with pytest.raises(FourthRankError):
+        s.project_map(np.eye(6), Notation.voigt(Ordering("11 22 12")), **sides)
+    with pytest.raises(ShapeError, match="matrix must have shape"):
+        s.project_map(np.eye(3), VOIGT, **sides)
+    with pytest.raises(DataError, match="finite"):
+        s.project_map(np.full((6, 6), np.nan), VOIGT, **sides)
 
 
 def test_a_zero_tensor_has_every_symmetry() -> None:

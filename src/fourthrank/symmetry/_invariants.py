@@ -13,7 +13,7 @@ from .._arrays import Inexact
 from .._mandel import rotation_matrices
 from .._turning import SQUARE, UPPER
 
-__all__ = ["RATES", "constants", "fixed_space", "from_constants", "rotation_action"]
+__all__ = ["RATES", "constants", "fixed_maps", "fixed_space", "from_constants", "rotation_action"]
 
 _ROOT: Final = np.sqrt(2.0)
 _ROWS, _COLUMNS = np.triu_indices(6)
@@ -44,11 +44,10 @@ def rotation_action(rotations: NDArray[np.float64]) -> NDArray[np.float64]:
     return np.ascontiguousarray(constants(turned).swapaxes(-1, -2))
 
 
-def _rates() -> NDArray[np.float64]:
-    """Return the (3, 21, 21) derivatives of `rotation_action` along rotations about the three axes.
+def _six_rates() -> NDArray[np.float64]:
+    """Return the (3, 6, 6) derivatives L_a of the 6x6 matrices of rotations about the three axes.
 
-    With W_ij = -eps_aij, a symmetric tensor changes at the rate W s + s W^T; the 6x6 matrix L of that map has exact
-    entries, and C changes at the rate L C + C L^T.
+    With W_ij = -eps_aij, a symmetric tensor changes at the rate W s + s W^T; the entries are exact.
     """
     rates = np.zeros((3, 3, 3))
     for a, i, j in ((0, 1, 2), (1, 2, 0), (2, 0, 1)):
@@ -60,11 +59,17 @@ def _rates() -> NDArray[np.float64]:
     changes = rates[:, None] @ units - units @ rates[:, None]
     rows, columns = np.array(pairs).T
     weights = np.where(rows == columns, 1.0, _ROOT)
-    six = (changes[..., rows, columns] * weights).swapaxes(-1, -2)[:, None]
+    return np.ascontiguousarray((changes[..., rows, columns] * weights).swapaxes(-1, -2))
+
+
+def _rates() -> NDArray[np.float64]:
+    """Return the (3, 21, 21) derivatives of `rotation_action`: C changes at the rate L C + C L^T."""
+    six = _SIX_RATES[:, None]
     return np.ascontiguousarray(constants(six @ _UNITS + _UNITS @ six.swapaxes(-1, -2)).swapaxes(-1, -2))
 
 
 _UNITS: Final = from_constants(np.eye(21))
+_SIX_RATES: Final = _six_rates()
 RATES: Final = _rates()
 """The three 21x21 matrices D_a: along a turn about axis a, the constants c change at the rate D_a c."""
 
@@ -79,6 +84,18 @@ def fixed_space(rotations: NDArray[np.float64], free_axes: NDArray[np.float64]) 
     rank = int((singular > _FIXED).sum())
     kernel = rows[rank:]
     return _tidy(kernel.T @ kernel, 21 - rank)
+
+
+def fixed_maps(rotations: NDArray[np.float64], free_axes: NDArray[np.float64]) -> NDArray[np.float64]:
+    """Return an orthonormal basis (k, 6, 6) of the linear maps, symmetric or not, that the generators leave alone."""
+    k, unit = rotation_matrices(rotations), np.eye(6)
+    six = np.tensordot(free_axes, _SIX_RATES, 1)
+    # The matrix of M -> A M B^T, row by row, is the Kronecker product of A and B.
+    turns = np.einsum("nij,nkl->nikjl", k, k) - np.einsum("ij,kl->ikjl", unit, unit)
+    rates = np.einsum("nij,kl->nikjl", six, unit) + np.einsum("ij,nkl->nikjl", unit, six)
+    equations = np.concatenate([turns, rates]).reshape(-1, 36)
+    _, singular, rows = np.linalg.svd(equations, full_matrices=True)
+    return np.ascontiguousarray(rows[int((singular > _FIXED).sum()) :].reshape(-1, 6, 6))
 
 
 def _tidy(projector: NDArray[np.float64], count: int) -> NDArray[np.float64]:

@@ -18,8 +18,8 @@ from .projection import norms, project_euclidean, ratio
 
 __all__ = ["AxesFit", "find_axes"]
 
-_BLOCK: Final = 200
-"""Tensors searched together; the memory for their starts stays below some 20 MB."""
+_BLOCK: Final = 100
+"""Tensors searched together; the memory for their starts stays below 10 MB."""
 _NO_ANISOTROPY: Final = 1e-14
 
 

@@ -1,24 +1,27 @@
 """Symmetry objects: groups of rotations given by generators, and the tensors that are invariant under them."""
 
 from collections.abc import Sequence
+from functools import lru_cache
 from typing import Final, TypeVar, final
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from .._arrays import read_only
+from .._arrays import read_only, take_in
 from .._fourth_rank import FourthRank
 from .._frozen import Frozen
-from .._mandel import turn_matrices
+from .._mandel import WORKING, turn_matrices
+from .._packing import Side
 from .._table import Table
-from .._value import make, working
+from .._value import check_notation, make, widen, working
 from ..errors import ShapeError, SymmetryError
 from ..notation import Notation
 from ..rotation.matrices import RotationLike, take_rotation, unit_vectors
 from ..tensors import Compliance, Stiffness
-from ._invariants import fixed_space, from_constants
+from ..translation import Translator
+from ._invariants import fixed_maps, fixed_space, from_constants
 from .pattern import pattern_table
-from .projection import Metric, distances, project, shares
+from .projection import Metric, distances, project, project_map, shares
 
 __all__ = ["Symmetry", "from_generators"]
 
@@ -133,6 +136,46 @@ class Symmetry(Frozen):
         array([11.,  4.,  4.,  0.,  0.,  0.])
         """
         return make(type(C), project(take_fourth_rank(C), self.basis, metric, type(C).__name__))
+
+    def project_map(self, matrix: ArrayLike, notation: Notation, *, rows: Side, columns: Side) -> NDArray[np.float64]:
+        """Return the closest matrices of linear maps that have this symmetry; the maps need not be symmetric.
+
+        A strain concentration tensor or a product of a stiffness and a compliance lacks the major symmetry, so that
+        its invariants are more than those in `basis`: the common solutions of ``K M K^T = M`` among all 6x6 matrices.
+
+        Parameters
+        ----------
+        matrix : array_like, shape (..., 6, 6)
+            The maps in a notation.
+        notation : Notation
+            How they are written; its ordering must be complete.
+        rows, columns : {"stress", "strain"}
+            What the maps give (rows) and what they take (columns).
+
+        Returns
+        -------
+        ndarray of float64 (complex128 for complex maps), shape (..., 6, 6)
+            The projected maps in the same notation; the distance that is minimised is that of the tensors.
+
+        Raises
+        ------
+        NotationError, OrderingError, ShapeError, DataError
+            If the notation is not complete, a side is neither of the two, or the matrices are no finite 6x6 ones.
+
+        Examples
+        --------
+        >>> import numpy as np
+        >>> from fourthrank import Notation, Ordering, symmetry
+        >>> voigt = Notation.voigt(Ordering("11 22 33 23 13 12"))
+        >>> concentration = np.diag([1.0, 2.0, 3.0, 4.0, 5.0, 6.0])
+        >>> symmetry.cubic().project_map(concentration, voigt, rows="strain", columns="strain").diagonal().round(12)
+        array([2., 2., 2., 5., 5., 5.])
+        """
+        check_notation(notation)
+        given = take_in(matrix, "matrix", (6, 6))
+        held = Translator(notation, WORKING).map(widen(given), rows=rows, columns=columns)
+        projected = project_map(held, _invariant_maps(self))
+        return Translator(WORKING, notation).map(projected, rows=rows, columns=columns, check=False)
 
     def distance(
         self, C: Stiffness | Compliance, *, relative: bool = True, metric: Metric = "euclidean"
@@ -386,6 +429,11 @@ def _distinct(products: NDArray[np.float64], group: NDArray[np.float64]) -> NDAr
             known = np.concatenate([known, row[None]])
             found.append(row.reshape(3, 3))
     return np.array(found).reshape(-1, 3, 3)
+
+
+@lru_cache(maxsize=64)
+def _invariant_maps(symmetry: Symmetry) -> NDArray[np.float64]:
+    return fixed_maps(symmetry.generators, symmetry.free_axes)
 
 
 def take_fourth_rank(C: FourthRank) -> NDArray[np.float64]:

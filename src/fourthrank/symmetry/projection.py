@@ -56,6 +56,13 @@ def project_euclidean(matrices: Inexact, basis: NDArray[np.float64]) -> Inexact:
     return result
 
 
+def project_map(matrices: Inexact, basis: NDArray[np.float64]) -> Inexact:
+    """Return the projections of linear maps (..., 6, 6), symmetric or not, on the span of an orthonormal basis."""
+    directions = basis.reshape(-1, 36)
+    projected: Inexact = (matrices.reshape(-1, 36) @ directions.T) @ directions
+    return projected.reshape(matrices.shape)
+
+
 def logarithm(matrices: Inexact, name: str) -> NDArray[np.float64]:
     """Return the matrix logarithms of positive definite matrices."""
     if matrices.dtype.kind == "c":
