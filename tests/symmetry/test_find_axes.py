@@ -192,6 +192,19 @@ def test_weak_anisotropy_is_searched_as_well() -> None:
     assert rotation.angle_between(fit.axes, find_axes(C.rotate(R), s).axes) < 1e-4
 
 
+@pytest.mark.parametrize("s", [symmetry.orthotropic(), symmetry.monoclinic(axis=2)], ids=str)
+def test_flat_valleys_are_followed_to_their_end(s: Symmetry) -> None:
+    """Nearly hexagonal tensors have almost flat minima in lower classes; the present axes do not matter."""
+    rng = np.random.default_rng(17)
+    errors = Stiffness.from_matrix(rng.standard_normal((300, 6, 6)), MANDEL, symmetrize=True)
+    hexagonal = symmetry.transversely_isotropic(axis=3).project(definite((300,), 18))
+    nearly = hexagonal + errors.scaled(1e-6 * hexagonal.norm() / errors.norm())
+    first = find_axes(nearly, s)
+    second = find_axes(nearly.rotate(rotation.random(300, rng)), s)
+    assert np.abs(first.distance - second.distance).max() < 1e-10
+    assert (first.distance < 1e-6).all()
+
+
 def test_bad_input_is_refused() -> None:
     """Complex tensors have no real axes; arrays have no kind."""
     C = Stiffness.from_matrix(np.eye(6) * (1 + 1j), MANDEL)

@@ -22,8 +22,10 @@ _STEPS: Final = 100
 _LONGEST_STEP: Final = 0.15
 _LAST_STEP: Final = 1e-7
 """A Newton step this short is the last one: the next would have its square."""
+_FLOOR: Final = 1e-12
+"""The least curvature that a step reckons with, as a part of the squared anisotropic norm; below it is rounding."""
 _SOFT: Final = 1e-9
-"""Curvatures below this part of the squared anisotropic norm count as zero."""
+"""Turns with a curvature below this part of the squared anisotropic norm are reported as undetermined."""
 _APART: Final = 0.02
 """Minima whose axes differ by less, in radians, are one."""
 
@@ -125,7 +127,7 @@ def _evaluate(matrices: Array, quaternions: Array, space: SearchSpace) -> tuple[
     """Return half the squared distances, and the Newton steps from here, downhill also where the curvature is not."""
     value, gradient, hessian, square = _derivatives(matrices, quaternions, space)
     curvature, directions = np.linalg.eigh(hessian)
-    floor = _SOFT * square[:, None] + np.finfo(np.float64).tiny
+    floor = _FLOOR * square[:, None] + np.finfo(np.float64).tiny
     along = (gradient[:, None, :] @ directions)[:, 0] / np.maximum(np.abs(curvature), floor)
     step = -(directions @ along[..., None])[..., 0]
     length = np.linalg.norm(step, axis=1, keepdims=True)
