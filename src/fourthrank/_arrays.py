@@ -119,11 +119,12 @@ def check_equal_components(
     rtol: float,
     describe: Callable[[int], str],
     hint: str,
+    entries: Callable[[tuple[int, ...], int], str] | None = None,
 ) -> bool:
     """Raise `SymmetryError` where components that must be equal differ by more than `rtol` of the largest component.
 
     Return whether they are equal exactly. `flat` has shape (..., n); component left[k] must equal component right[k];
-    `describe(k)` names the pair.
+    `describe(k)` names the pair. Where `flat` does not hold the caller's own numbers, `entries(member, k)` states them.
     """
     if flat.size == 0:
         return True
@@ -142,10 +143,15 @@ def check_equal_components(
             with np.errstate(divide="ignore", invalid="ignore"):
                 relative = defect / largest[:, None]
             item, k = np.unravel_index(int(relative.argmax()), relative.shape)
-            member = np.unravel_index(part.start + int(item), flat.shape[:-1])
+            member = tuple(map(int, np.unravel_index(part.start + int(item), flat.shape[:-1])))
+            if entries is None:
+                found = (
+                    f"must be equal: {first[item, k]:.10g} and {second[item, k]:.10g} differ by {defect[item, k]:.3g},"
+                )
+            else:
+                found = f"must be equal: {entries(member, int(k))}; the components differ by"
             raise SymmetryError(
-                f"{describe(int(k))}{member_text([int(i) for i in member])} must be equal: {first[item, k]:.10g} and "
-                f"{second[item, k]:.10g} differ by {defect[item, k]:.3g}, {relative[item, k]:.2g} of the largest "
+                f"{describe(int(k))}{member_text(member)} {found} {relative[item, k]:.2g} of the largest "
                 f"component; the tolerance is rtol={rtol:.2g}; {hint}"
             )
     return exact
@@ -157,10 +163,8 @@ def blocks(count: int, width: int) -> "Iterator[slice[int, int]]":
     return (slice(start, min(start + step, count)) for start in range(0, count, step))
 
 
-def take_out(out: NDArray[Any] | None, shape: tuple[int, ...], dtype: np.dtype[Any]) -> None:
+def take_out(out: NDArray[Any], shape: tuple[int, ...], dtype: np.dtype[Any]) -> None:
     """Check the caller's `out` before anything is written to it."""
-    if out is None:
-        return
     if not isinstance(out, np.ndarray):  # pyright: ignore[reportUnnecessaryIsInstance]  # callers without a checker
         raise DataError(f"out must be a numpy array, got {type(out).__name__}")
     if out.shape != shape:

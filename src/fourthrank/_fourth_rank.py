@@ -82,7 +82,7 @@ class FourthRank(Quantity):
             held = gather.checked(widen(array), None, lambda: check_finite(array, name, 2, notation.label_places))
         else:
             held = gather(widen(array))
-        exact = check and not symmetrize and _mandel.check_major(held, tolerance, name, notation)
+        exact = check and not symmetrize and _mandel.check_major(held, tolerance, name, array, notation)
         return cls._hold(held if exact else _mandel.symmetrize(held))
 
     @classmethod
@@ -124,7 +124,7 @@ class FourthRank(Quantity):
             check_finite(array, name, 4, label_indices)
             check_minor(array, name)
         held = _mandel.WORKING.pack_map(widen(array), rows=cls._rows, columns=cls._columns, check=False)
-        exact = check and not symmetrize and _mandel.check_major(held, tolerance, name, _mandel.WORKING)
+        exact = check and not symmetrize and _mandel.check_major(held, tolerance, name, array, None)
         return cls._hold(held if exact else _mandel.symmetrize(held))
 
     @classmethod

@@ -10,6 +10,7 @@ import numpy as np
 
 from ._arrays import Inexact, blocks, check_equal_components
 from ._inversion import invert
+from ._packing.weights import label_indices
 from ._turning import map_vectors, rotate_matrix, rotation_matrices, symmetric_part, turn_matrices, turn_vectors
 from .notation import Notation
 from .ordering import VOIGT_ORDER
@@ -58,22 +59,35 @@ def is_symmetric(matrix: Inexact) -> bool:
 
 
 def check_major(
-    held: Inexact, rtol: float, name: str, notation: Notation, way_on: str = "symmetrize=True averages the two"
+    held: Inexact,
+    rtol: float,
+    name: str,
+    given: Inexact,
+    notation: Notation | None,
+    way_on: str = "symmetrize=True averages the two",
 ) -> bool:
     """Raise `SymmetryError` unless t_ijkl = t_klij, and return whether that holds exactly.
 
-    `notation` is the one in which the caller knows the matrix.
+    `given` is the caller's own array, which the message quotes: matrices in `notation`, or full tensors (None).
     """
-    pairs, labels = WORKING.ordering.pairs, WORKING.ordering.labels()
+    pairs = WORKING.ordering.pairs
 
     def describe(k: int) -> str:
-        i, j = int(_ROWS[k]), int(_COLUMNS[k])
-        row, column = notation.ordering.position(*pairs[i]), notation.ordering.position(*pairs[j])
-        return (
-            f"{name} must have the major symmetry: components [{labels[i]}, {labels[j]}] and [{labels[j]}, {labels[i]}]"
-            f" (row and column {row + 1}, {column + 1} and {column + 1}, {row + 1} in the order '{notation.ordering}';"
-            " values in Mandel form)"
-        )
+        row, column = pairs[int(_ROWS[k])], pairs[int(_COLUMNS[k])]
+        first, second = label_indices((*row, *column)), label_indices((*column, *row))
+        return f"{name} must have the major symmetry: tensor components {first} and {second}"
+
+    def entries(member: tuple[int, ...], k: int) -> str:
+        row, column = pairs[int(_ROWS[k])], pairs[int(_COLUMNS[k])]
+        if notation is None:
+            places: tuple[tuple[int, ...], ...] = ((*row, *column), (*column, *row))
+            texts = [label_indices(place) for place in places]
+        else:
+            i, j = notation.ordering.position(*row), notation.ordering.position(*column)
+            places = ((i, j), (j, i))
+            texts = [f"{notation.label_places(place)} (row {place[0] + 1}, column {place[1] + 1})" for place in places]
+        values = [given[(*member, *place)] for place in places]
+        return f"{texts[0]} is {values[0]:.10g} and {texts[1]} is {values[1]:.10g} in {notation or 'the given tensor'}"
 
     return check_equal_components(
         held.reshape(*held.shape[:-2], 36),
@@ -82,6 +96,7 @@ def check_major(
         rtol,
         describe,
         f"the usual cause is another shear factor or a misread entry; {way_on}",
+        entries,
     )
 
 

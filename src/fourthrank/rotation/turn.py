@@ -341,7 +341,7 @@ class Turn(Frozen):
             # Where the matrices themselves are symmetric, so are the tensors, without a translation.
             if not (self._notation.work_conjugate and _mandel.is_symmetric(array)):
                 held, way_on = there.matrix(array, *sides), "average the two triangles first"
-                _mandel.check_major(held, default_rtol(array.dtype), name, self._notation, way_on)
+                _mandel.check_major(held, default_rtol(array.dtype), name, array, self._notation, way_on)
         if self._rotations.ndim == 2:
             return self._folds[sides](array, out)
         shape = (*broadcast_batches(**{name: array.shape[:-2], "R": self.shape}), 6, 6)
