@@ -4,7 +4,7 @@ from abc import abstractmethod
 from collections.abc import Callable, Sequence
 from numbers import Number
 from types import EllipsisType
-from typing import Any, ClassVar, Final, NoReturn, Self, TypeAlias, TypeVar, cast
+from typing import Any, ClassVar, Final, Never, Self, TypeAlias, TypeVar, cast
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -36,7 +36,7 @@ class Quantity(Frozen):
     __array_ufunc__ = None
     __iter__ = None
 
-    def __init__(self, *_: object, **__: object) -> None:
+    def __init__(self, *_: Never, **__: Never) -> None:
         raise TypeError(f"{type(self).__name__} is made by its from_... constructors, which ask for what is needed")
 
     @classmethod
@@ -46,7 +46,8 @@ class Quantity(Frozen):
         object.__setattr__(self, "_held", read_only(widen(array)))
         return self
 
-    def __array__(self, *_: object, **__: object) -> NoReturn:
+    # Not NoReturn: type checkers would take the object for something that numpy can read.
+    def __array__(self, *_: object, **__: object) -> object:
         raise ImplicitNotationError(
             f"a {type(self).__name__} is no bare array: its numbers depend on the component order and the shear "
             f"weights; name a notation ({self._reading}), or ask for the full tensor (.tensor())"
