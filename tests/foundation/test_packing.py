@@ -1,9 +1,10 @@
 """Packing and translation: exactness, the defining identities, and agreement with plain sums over full tensors."""
 
 import math
+from functools import partial
+from importlib import import_module
 from typing import Any
 
-import mpmath
 import numpy as np
 import pytest
 from hypothesis import given
@@ -29,8 +30,13 @@ from tests.strategies import (
 )
 
 EPS = np.finfo(float).eps
+mpmath: Any = import_module("mpmath")  # it has no types
 VOIGT = Notation.voigt(Ordering("11 22 33 23 13 12"))
 MANDEL = Notation.mandel(Ordering("11 22 33 23 13 12"))
+# The same without types, for misuse on purpose and for choices that are drawn.
+UNTYPED: Any = Notation
+UNTYPED_VOIGT: Any = VOIGT
+UNTYPED_TRANSLATOR: Any = Translator
 SIDES = st.sampled_from(["stress", "strain"])
 
 
@@ -221,7 +227,7 @@ def test_translations_compose(rng: np.random.Generator, a: Notation, b: Notation
 def test_partial_ordering_packs_plane_tensors(
     rng: np.random.Generator, ordering: Ordering, batch: tuple[int, ...], compression: bool
 ) -> None:
-    """Components that have a place come back exactly, the others are zero; a shear one that lacks a place is refused."""
+    """Components with a place come back exactly, the others are zero; a shear one without a place is refused."""
     notation = Notation.voigt(ordering, compression_positive=compression)
     vector = random_array(rng, (*batch, ordering.size))
     tensor = notation.unpack_strain(vector)
@@ -246,7 +252,7 @@ def test_partial_ordering_has_no_six_by_six_matrix() -> None:
 
 @given(generators, work_conjugate_notations(), batch_shapes, st.sampled_from(DTYPES))
 def test_triangles_list_the_places_of_a_plain_double_loop(
-    rng: np.random.Generator, notation: Notation, batch: tuple[int, ...], dtype: type[Any]
+    rng: np.random.Generator, notation: Any, batch: tuple[int, ...], dtype: type[Any]
 ) -> None:
     """By rows is i then j >= i, by columns is j then i <= j; both come back exactly."""
     matrix = random_array(rng, (*batch, 6, 6), dtype)
@@ -256,11 +262,11 @@ def test_triangles_list_the_places_of_a_plain_double_loop(
         "columns": [(i, j) for j in range(6) for i in range(j + 1)],
     }
     for by in ("rows", "columns"):
-        triangle = notation.pack_triangle(matrix, by=by)  # type: ignore[call-overload]  # pyright: ignore  # both are literals
+        triangle = notation.pack_triangle(matrix, by=by)
         expected = np.stack([matrix[..., i, j] for i, j in places[by]], axis=-1)
         assert triangle.dtype == np.dtype(dtype)
         assert (triangle == expected).all()
-        assert (notation.unpack_triangle(triangle, by=by) == matrix).all()  # type: ignore[call-overload]  # pyright: ignore  # as above
+        assert (notation.unpack_triangle(triangle, by=by) == matrix).all()
 
 
 def test_triangle_refusals_name_entry_and_way_on() -> None:
@@ -272,7 +278,7 @@ def test_triangle_refusals_name_entry_and_way_on() -> None:
     with pytest.raises(NotationError, match="not work-conjugate"):
         Notation.tensorial(VOIGT.ordering).pack_triangle(np.eye(6), by="rows")
     with pytest.raises(NotationError, match="by must be 'rows' or 'columns', got by='row'"):
-        VOIGT.unpack_triangle(np.zeros(21), by="row")  # type: ignore[call-overload]  # pyright: ignore  # misuse
+        UNTYPED_VOIGT.unpack_triangle(np.zeros(21), by="row")
 
 
 CALLS: dict[str, tuple[Any, tuple[int, ...], tuple[int, ...]]] = {
@@ -288,8 +294,8 @@ CALLS: dict[str, tuple[Any, tuple[int, ...], tuple[int, ...]]] = {
     "translate strain": (Translator(VOIGT, MANDEL).strain, (6,), (6,)),
     "translate stiffness": (Translator(VOIGT, MANDEL).stiffness, (6, 6), (6, 6)),
     "translate compliance": (Translator(VOIGT, MANDEL).compliance, (6, 6), (6, 6)),
-    "pack_triangle": (lambda m, **k: VOIGT.pack_triangle(m, by="rows", **k), (6, 6), (21,)),
-    "unpack_triangle": (lambda t, **k: VOIGT.unpack_triangle(t, by="rows", **k), (21,), (6, 6)),
+    "pack_triangle": (partial(VOIGT.pack_triangle, by="rows"), (6, 6), (21,)),
+    "unpack_triangle": (partial(VOIGT.unpack_triangle, by="rows"), (21,), (6, 6)),
 }
 EACH_CALL = pytest.mark.parametrize("call", CALLS.values(), ids=CALLS.keys())
 
@@ -358,6 +364,16 @@ def test_numbers_whose_squares_overflow_are_finite(call: Any, batch: tuple[int, 
     """1e200 is a number."""
     function, core, _ = call
     assert np.isfinite(function(np.full((*batch, *core), 1e200))).all()
+
+
+@EACH_CALL
+@pytest.mark.parametrize("batch", [(), (300,)], ids=str)
+def test_unchecked_data_give_the_same_numbers_and_let_nan_through(call: Any, batch: tuple[int, ...]) -> None:
+    """`check=False` changes nothing for good data, and does not look at bad ones."""
+    function, core, _ = call
+    array = valid(core, batch)
+    assert (function(array, check=False) == function(array)).all()
+    assert np.isnan(function(np.full((*batch, *core), math.nan), check=False)).any()
 
 
 @EACH_CALL
@@ -430,12 +446,12 @@ def test_notation_refuses_what_is_no_notation() -> None:
     order = VOIGT.ordering
     for bad in (0.0, -1.0, math.nan, math.inf, True, "1", None):
         with pytest.raises(NotationError, match="stress_shear must be a positive finite number"):
-            Notation(order, stress_shear=bad, strain_shear=1.0)  # type: ignore[arg-type]  # pyright: ignore  # misuse
+            UNTYPED(order, stress_shear=bad, strain_shear=1.0)
     with pytest.raises(NotationError, match=r"ordering must be an Ordering, got '11 22'"):
-        Notation.voigt("11 22")  # type: ignore[arg-type]  # pyright: ignore  # misuse
+        UNTYPED.voigt("11 22")
     with pytest.raises(NotationError, match="compression_positive must be True or False, got 1"):
-        Notation.voigt(order, compression_positive=1)  # type: ignore[arg-type]  # pyright: ignore  # misuse
+        UNTYPED.voigt(order, compression_positive=1)
     with pytest.raises(NotationError, match="rows must be 'stress' or 'strain', got rows='stresses'"):
-        VOIGT.pack_map(np.zeros((3, 3, 3, 3)), rows="stresses", columns="strain")  # type: ignore[call-overload]  # pyright: ignore  # misuse
+        UNTYPED_VOIGT.pack_map(np.zeros((3, 3, 3, 3)), rows="stresses", columns="strain")
     with pytest.raises(NotationError, match="source must be a Notation, got 'voigt'"):
-        Translator("voigt", VOIGT)  # type: ignore[arg-type]  # pyright: ignore  # misuse
+        UNTYPED_TRANSLATOR("voigt", VOIGT)
