@@ -132,6 +132,18 @@ def exactly(value: Any) -> Any:
     return mpmath.mpf(numerator) / denominator
 
 
+@given(generators, notations(), batch_shapes)
+def test_vectors_carry_the_weight_and_the_sign_of_the_notation(
+    rng: np.random.Generator, notation: Notation, batch: tuple[int, ...]
+) -> None:
+    """s_I = w_I sigma_ij and e_I = w_I eps_ij, both of opposite sign where compression is positive."""
+    tensor = symmetric_tensors(rng, batch)
+    np.testing.assert_allclose(notation.pack_stress(tensor), plain_vector(notation, tensor, "stress"), rtol=4 * EPS)
+    np.testing.assert_allclose(notation.pack_strain(tensor), plain_vector(notation, tensor, "strain"), rtol=4 * EPS)
+    np.testing.assert_allclose(notation.unpack_stress(plain_vector(notation, tensor, "stress")), tensor, rtol=4 * EPS)
+    np.testing.assert_allclose(notation.unpack_strain(plain_vector(notation, tensor, "strain")), tensor, rtol=4 * EPS)
+
+
 @given(generators, notations(), batch_shapes, SIDES, SIDES)
 def test_matrix_of_a_map_is_what_sums_over_the_tensor_give(
     rng: np.random.Generator, notation: Notation, batch: tuple[int, ...], rows: Any, columns: Any
