@@ -29,8 +29,8 @@ NOTATIONS = st.builds(notation_of, st.permutations(PAIRS), WEIGHTS, st.booleans(
 VOIGT = fr.Notation.voigt(fr.Ordering("11 22 33 12 13 23"))
 # float64 and float32 with the number of their own units in the last place that results may differ by.
 DTYPES = ["float32", "float64", "longdouble", "complex64", "complex128", "clongdouble"]
-FOURTH = {"stiffness": fr.Stiffness, "compliance": fr.Compliance}
-SECOND = {"stress": fr.Stress, "strain": fr.Strain}
+FOURTH: dict[str, type[fr.Stiffness | fr.Compliance]] = {"stiffness": fr.Stiffness, "compliance": fr.Compliance}
+SECOND: dict[str, type[fr.Stress | fr.Strain]] = {"stress": fr.Stress, "strain": fr.Strain}
 BATCHES = st.one_of(hnp.mutually_broadcastable_shapes(num_shapes=2, max_dims=3, min_side=0, max_side=3))
 
 

@@ -1,1 +1,5 @@
-"""Assurance: whether data can be what it claims to be, and where two sets of data part."""
+"""Assurance: whether data can be what it claims to be, and by which margin."""
+
+from .admissibility import Admissibility, Inequality, admissibility
+
+__all__ = ["Admissibility", "Inequality", "admissibility"]
