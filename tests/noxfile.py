@@ -110,7 +110,7 @@ def coverage(session: nox.Session) -> None:
 def types(session: nox.Session) -> None:
     """Check the types with two strict checkers, and that both reject every marked misuse."""
     session.chdir(ROOT)  # a session starts in the folder of this file
-    install(session, "test", *tools("nox", "numba", "pyright", "pytest-benchmark", "scipy-stubs", "types-jsonschema"))
+    install(session, "test", *tools("nox", "numba", "pyright", "pytest-benchmark", "scipy-stubs"))
     session.run("mypy")
     session.run("pyright")
     session.run("python", "-m", "tests.typing.pyright_rejects")
