@@ -145,7 +145,7 @@ def test_in_axes_turns_the_invariant_tensors(q: list[float], s: Symmetry) -> Non
     turned = s.in_axes(A)
     assert turned.count == s.count
     along = Stiffness.from_matrix(turned.basis, MANDEL).in_axes(A)
-    assert float(np.max(s.distance(along))) < 1e-14
+    assert float(np.max(s.distance(along))) < 64 * 2.0**-52  # the bound on turning there and back
     assert np.abs(turned.axes - A).max() < 1e-15
 
 
