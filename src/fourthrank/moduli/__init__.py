@@ -3,5 +3,13 @@
 from .engineering import EngineeringConstants, engineering_constants
 from .isotropic import Isotropic
 from .orthotropic import Orthotropic
+from .plane import plane_strain_stiffness, plane_stress_stiffness
 
-__all__ = ["EngineeringConstants", "Isotropic", "Orthotropic", "engineering_constants"]
+__all__ = [
+    "EngineeringConstants",
+    "Isotropic",
+    "Orthotropic",
+    "engineering_constants",
+    "plane_strain_stiffness",
+    "plane_stress_stiffness",
+]
