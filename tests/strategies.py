@@ -13,7 +13,8 @@ from hypothesis import strategies as st
 from hypothesis.extra import numpy as hnp
 from numpy.typing import NDArray
 
-from fourthrank import Notation, Ordering
+from fourthrank import Notation, Ordering, Stiffness
+from fourthrank.ordering import VOIGT_ORDER
 
 __all__ = [
     "ALL_ORDERINGS",
@@ -27,6 +28,7 @@ __all__ = [
     "notations",
     "partial_orderings",
     "random_array",
+    "random_stiffness",
     "rotations",
     "stiffness_tensors",
     "symmetric_tensors",
@@ -138,6 +140,12 @@ def well_conditioned(
     values = scale * np.geomspace(1.0 / condition, 1.0, 6)
     matrix = np.einsum("...ik,k,...jk->...ij", vectors, values, vectors)
     return np.asarray((matrix + matrix.swapaxes(-1, -2)) / 2)
+
+
+def random_stiffness(rng: np.random.Generator, batch: tuple[int, ...]) -> Stiffness:
+    """Return positive definite stiffnesses without any symmetry."""
+    root = rng.normal(size=(*batch, 6, 6))
+    return Stiffness.from_matrix(root @ root.swapaxes(-1, -2) + np.eye(6), Notation.voigt(VOIGT_ORDER))
 
 
 def rotations(rng: np.random.Generator, batch: tuple[int, ...]) -> NDArray[np.float64]:

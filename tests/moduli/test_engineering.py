@@ -4,17 +4,11 @@ import numpy as np
 import pytest
 from hypothesis import given
 
-from fourthrank import Compliance, Notation, Ordering, ShapeError, Stiffness, Stress
+from fourthrank import Compliance, Notation, Ordering, ShapeError, Stress
 from fourthrank.moduli import engineering_constants
-from tests.strategies import generators
+from tests.strategies import generators, random_stiffness
 
 VOIGT = Notation.voigt(Ordering("11 22 33 23 13 12"))
-
-
-def random_stiffness(rng: np.random.Generator, batch: tuple[int, ...]) -> Stiffness:
-    """Return positive definite tensors without any symmetry."""
-    root = rng.normal(size=(*batch, 6, 6))
-    return Stiffness.from_matrix(root @ root.swapaxes(-1, -2) + np.eye(6), VOIGT)
 
 
 @given(generators)
