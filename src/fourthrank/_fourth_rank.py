@@ -281,6 +281,6 @@ def _require_complete(notation: Notation) -> None:
     if not notation.ordering.complete:
         raise OrderingError(
             f"a 6x6 matrix needs all six pairs, the ordering '{notation.ordering}' has {notation.ordering.size}: for "
-            "plane problems use moduli.plane_stress_stiffness, moduli.plane_strain_stiffness or moduli.Lamina, which "
+            "plane problems use moduli.plane_stress_stiffness or moduli.plane_strain_stiffness, which "
             "say what is meant"
         )

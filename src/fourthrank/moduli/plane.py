@@ -11,6 +11,7 @@ from .._value import check_notation, working
 from ..errors import AdmissibilityError, OrderingError
 from ..notation import Notation
 from ..tensors import Compliance, Stiffness
+from ..translation import passage
 
 __all__ = ["plane_strain_stiffness", "plane_stress_stiffness"]
 
@@ -145,9 +146,4 @@ def _inverse(block: Inexact) -> Inexact:
 
 def _weighted(block: Inexact, notation: Notation) -> Inexact:
     """Return a block of the working form with the weights of the notation."""
-    shear = np.array([i != j for i, j in notation.ordering.pairs])
-    m = np.where(shear, 2.0, 1.0)
-    rows = np.where(shear, notation.stress_shear, 1.0)
-    columns = np.where(shear, notation.strain_shear, 1.0)
-    # One root of the product: exact for shear with shear, where two roots would not be.
-    return np.asarray(block * (rows[:, None] * m / columns / np.sqrt(m[:, None] * m)))
+    return passage(Notation.mandel(notation.ordering), notation).matrix(block, "stress", "strain")
