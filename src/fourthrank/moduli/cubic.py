@@ -1,20 +1,20 @@
 """The three constants of a cubic solid in its cube axes."""
 
-from typing import Any, Final, Self, final
+from typing import Final, Self, final
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from .._arrays import Inexact, member_text, read_tolerance
+from .._arrays import Inexact
 from .._frozen import Frozen
 from .._value import make, working
-from ..errors import ModuliError
 from ..tensors import Compliance, Stiffness
-from ._fields import require, take_constants
+from ._fields import check_class, cubic_pattern, require, take_constants
 
 __all__ = ["Cubic"]
 
 _NAMES: Final = ("C11", "C12", "C44")
+_WAY_ON: Final = "find its axes (symmetry.find_axes), or take the closest cubic tensor (symmetry.cubic().project)"
 
 
 @final
@@ -76,7 +76,7 @@ class Cubic(Frozen):
         Stiffness
             A batch of the shape of the constants.
         """
-        return make(Stiffness, _assemble(self.C11, self.C12, 2.0 * self.C44))
+        return make(Stiffness, cubic_pattern(self.C11, self.C12, 2.0 * self.C44))
 
     def compliance(self) -> Compliance:
         """Return the compliance: ``S_1111 = (C11 + C12) / D``, ``S_1122 = -C12 / D``, ``S_2323 = 1 / (4 C44)``.
@@ -90,7 +90,7 @@ class Cubic(Frozen):
         """
         difference, total = self.C11 - self.C12, self.C11 + 2.0 * self.C12
         normal = (self.C11 + self.C12) / difference / total
-        return make(Compliance, _assemble(normal, -self.C12 / difference / total, 0.5 / self.C44))
+        return make(Compliance, cubic_pattern(normal, -self.C12 / difference / total, 0.5 / self.C44))
 
     @classmethod
     def from_stiffness(cls, C: Stiffness, *, rtol: float | None = None) -> Self:
@@ -115,17 +115,7 @@ class Cubic(Frozen):
         """
         array = working(C)
         normal, coupling, shear = _means(array)
-        rest = np.asarray(array - _assemble(normal, coupling, shear))
-        size, misfit = C.norm(), np.sqrt((np.abs(rest) ** 2).sum(axis=(-2, -1)))
-        tolerance = read_tolerance(rtol, "rtol", array.dtype)
-        excess = np.asarray(misfit > tolerance * size)
-        if excess.any():
-            member = tuple(int(i) for i in np.unravel_index(int(excess.argmax()), excess.shape))
-            raise ModuliError(
-                f"stiffness{member_text(member)} is not cubic in these axes: it differs from the closest cubic tensor "
-                f"by {misfit[member] / size[member]:.3g} of its norm; the tolerance is rtol={tolerance:.2g}; turn it "
-                "into its axes of symmetry (symmetry.find_axes), or take the closest (symmetry.cubic().project)"
-            )
+        check_class(C, cubic_pattern(normal, coupling, shear), rtol, "cubic in these axes", _WAY_ON)
         return cls(normal, coupling, 0.5 * shear)
 
     @classmethod
@@ -173,12 +163,3 @@ def _means(array: Inexact) -> tuple[Inexact, Inexact, Inexact]:
     diagonal = np.diagonal(array, axis1=-2, axis2=-1)
     coupling = (array[..., 0, 1] + array[..., 0, 2] + array[..., 1, 2]) / 3.0
     return diagonal[..., :3].sum(axis=-1) / 3.0, np.asarray(coupling), diagonal[..., 3:].sum(axis=-1) / 3.0
-
-
-def _assemble(normal: Any, coupling: Any, shear: Any) -> Inexact:
-    array = np.zeros((*np.shape(normal), 6, 6), np.result_type(normal, coupling, shear))
-    array[..., :3, :3] = np.asarray(coupling)[..., None, None]
-    for k in range(3):
-        array[..., k, k] = normal
-        array[..., 3 + k, 3 + k] = shear
-    return array

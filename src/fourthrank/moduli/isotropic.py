@@ -1,21 +1,22 @@
 """The two constants of an isotropic solid, from any two of the six that people exchange."""
 
 from collections.abc import Callable, Mapping
-from typing import Any, Final, Literal, Self, final, overload
+from typing import Final, Literal, Self, final, overload
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from .._arrays import Inexact, member_text, read_only, read_tolerance
+from .._arrays import Inexact, read_only
 from .._frozen import Frozen
 from .._value import make, working
 from ..errors import ModuliError
 from ..tensors import Compliance, Stiffness
-from ._fields import require, take_constants
+from ._fields import check_class, cubic_pattern, require, take_constants
 
 __all__ = ["Isotropic"]
 
 _NAMES: Final = ("E", "nu", "G", "K", "lam", "M")
+_WAY_ON: Final = "take the closest isotropic tensor (symmetry.isotropic().project)"
 
 # For each pair: G, nu, 1 + nu and 1 - 2 nu, each arranged so that nothing cancels that need not. The last two stand
 # by themselves since they keep their digits where nu is near -1 or 1/2.
@@ -241,7 +242,7 @@ class Isotropic(Frozen):
         G = (array[..., 3, 3] + array[..., 4, 4] + array[..., 5, 5]) / 6.0
         lam = (array[..., 0, 1] + array[..., 0, 2] + array[..., 1, 2]) / 3.0
         found = cls.from_two(G=G, lam=lam)
-        _check_misfit(C, found.stiffness(), rtol)
+        check_class(C, working(found.stiffness()), rtol, "isotropic", _WAY_ON)
         return found
 
     @classmethod
@@ -269,7 +270,7 @@ class Isotropic(Frozen):
         E = 3.0 / (array[..., 0, 0] + array[..., 1, 1] + array[..., 2, 2])
         nu = -E * (array[..., 0, 1] + array[..., 0, 2] + array[..., 1, 2]) / 3.0
         found = cls.from_two(E=E, nu=nu)
-        _check_misfit(S, found.compliance(), rtol)
+        check_class(S, working(found.compliance()), rtol, "isotropic", _WAY_ON)
         return found
 
     @property
@@ -293,7 +294,7 @@ class Isotropic(Frozen):
         require(
             np.isfinite(self.K), "K", self.K, "finite", "an incompressible solid has a compliance() and no stiffness"
         )
-        return make(Stiffness, _assemble(self.M, self.lam, 2.0 * self.G))
+        return make(Stiffness, cubic_pattern(self.M, self.lam, 2.0 * self.G))
 
     def compliance(self) -> Compliance:
         """Return the compliance: ``S_1111 = 1 / E``, ``S_1122 = -nu / E``, ``S_1212 = 1 / (4 G)``.
@@ -303,7 +304,7 @@ class Isotropic(Frozen):
         Compliance
             A batch of the shape of the constants, in the inverse unit.
         """
-        return make(Compliance, _assemble(1.0 / self.E, -self.nu / self.E, 0.5 / self.G))
+        return make(Compliance, cubic_pattern(1.0 / self.E, -self.nu / self.E, 0.5 / self.G))
 
     def __eq__(self, other: object) -> bool:
         if not isinstance(other, Isotropic):
@@ -365,27 +366,3 @@ def _check_base(base: _Base, fields: Mapping[str, Inexact]) -> None:
     if np.isrealobj(nu):
         holds = (plus > 0.0) & (minus >= 0.0)
         require(holds, "nu", np.asarray(nu), "in -1 < nu <= 1/2", f"for positive energy; it follows from {text}")
-
-
-def _assemble(normal: Inexact, coupling: Inexact, shear: Inexact) -> Inexact:
-    """Return working-form matrices of isotropic pattern."""
-    array = np.zeros((*np.shape(normal), 6, 6), np.result_type(normal, coupling, shear))
-    array[..., :3, :3] = np.asarray(coupling)[..., None, None]
-    for k in range(3):
-        array[..., k, k] = normal
-        array[..., 3 + k, 3 + k] = shear
-    return array
-
-
-def _check_misfit(tensor: Any, fitted: Any, rtol: float | None) -> None:
-    """Raise `ModuliError` where a tensor is not the isotropic one that was fitted to it."""
-    tolerance = read_tolerance(rtol, "rtol", working(tensor).dtype)
-    size, misfit = tensor.norm(), (tensor - fitted).norm()
-    excess = np.asarray(misfit > tolerance * size)
-    if excess.any():
-        member = tuple(int(i) for i in np.unravel_index(int(excess.argmax()), excess.shape))
-        raise ModuliError(
-            f"{type(tensor).__name__.lower()}{member_text(member)} is not isotropic: it differs from the isotropic "
-            f"tensor of its shear and coupling components by {misfit[member] / size[member]:.3g} of its norm; the "
-            f"tolerance is rtol={tolerance:.2g}; take the closest isotropic tensor (symmetry.isotropic().project)"
-        )
