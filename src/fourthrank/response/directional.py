@@ -208,7 +208,8 @@ def _perpendicular(n: ArrayLike, m: ArrayLike) -> tuple[NDArray[np.float64], NDA
         angle = np.degrees(np.arccos(np.clip(cosine[member], -1.0, 1.0)))
         raise DataError(
             f"n and m{member_text(member)} must be perpendicular: their angle is {angle:.9g} degrees (cosine "
-            f"{cosine[member]:.3g}, tolerance {_PERPENDICULAR:.0e}); take away from m its part along n, m - (m . n) n with n of unit length"
+            f"{cosine[member]:.3g}, tolerance {_PERPENDICULAR:.0e}); take away from m its part along n: "
+            "m - (m . n) n with n of unit length"
         )
     first, second = np.broadcast_arrays(first, second)
     return first, second
