@@ -33,14 +33,14 @@ def factors(sides: tuple[Side, ...], notation: Notation) -> list[Decimal]:
 
     `sides` is what a vector is, or what the rows and the columns of a matrix stand for.
     """
-    where = places(notation)
+    where: list[int] = places(notation).tolist()
     if len(sides) == 1:
         ours, theirs = WORKING.side_squares(sides[0]), notation.side_squares(sides[0])
-        roots = [_root(square / ours[place]) for square, place in zip(theirs, where.tolist(), strict=True)]
+        roots = [_root(theirs[n] / ours[place]) for n, place in enumerate(where)]
         return [root.copy_negate() for root in roots] if notation.compression_positive else roots
     ours, theirs = WORKING.matrix_squares(*sides), notation.matrix_squares(*sides)
-    index = (6 * where[:, None] + where).ravel()
-    return [_root(square / ours[place]) for square, place in zip(theirs, index.tolist(), strict=True)]
+    index = [6 * i + j for i in where for j in where]
+    return [_root(theirs[n] / ours[place]) for n, place in enumerate(index)]
 
 
 def write_array(values: Inexact, by: Sequence[Decimal]) -> str:
@@ -48,7 +48,7 @@ def write_array(values: Inexact, by: Sequence[Decimal]) -> str:
     flat: list[float] = np.ascontiguousarray(values).view(np.float64).ravel().tolist()
     per = 2 if values.dtype.kind == "c" else 1
     literals = (_literal(value, by[n // per % len(by)]) for n, value in enumerate(flat))
-    return _nested(literals, values.shape + (2,) * (per - 1))
+    return _nested(literals, values.shape + (2,) * (per - 1), per)
 
 
 def read_array(value: Json, shape: tuple[int, ...], is_complex: bool, by: Sequence[Decimal], name: str) -> Inexact:
@@ -82,11 +82,12 @@ def _double(decimal: Decimal, factor: Decimal, name: str) -> float:
     return value
 
 
-def _nested(literals: Iterator[str], shape: tuple[int, ...]) -> str:
+def _nested(literals: Iterator[str], shape: tuple[int, ...], in_line: int) -> str:
+    """Return lists in lists; so many of the last axes stand in one line."""
     if not shape:
         return next(literals)
-    between = ", " if len(shape) == 1 else ",\n    "
-    return f"[{between.join(_nested(literals, shape[1:]) for _ in range(shape[0]))}]"
+    between = ", " if len(shape) <= in_line else ",\n    "
+    return f"[{between.join(_nested(literals, shape[1:], in_line) for _ in range(shape[0]))}]"
 
 
 def _leaves(value: Json, shape: tuple[int, ...], name: str) -> Iterator[Decimal]:
