@@ -6,7 +6,7 @@ a factor of sqrt 2 lies between the record and the form in which the object is h
 """
 
 import re
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass
 from decimal import Decimal
 from json import dumps
@@ -19,6 +19,7 @@ from ._arrays import Inexact, check_finite, read_only, take_in
 from ._fourth_rank import FourthRank
 from ._mandel import WORKING
 from ._packing import Side
+from ._record_constants import CONSTANTS
 from ._record_numbers import PLAIN, factors, places, read_array, write_array
 from ._record_parts import (
     check_keys,
@@ -52,23 +53,13 @@ _NUMBERS: Final = {"real": False, "complex": True}
 _CHECKSUM: Final = re.compile(r"[0-9a-f]{64}")
 
 
-@dataclass(frozen=True, slots=True)
-class ConstantsKind:
-    """How a class of elastic constants is recorded: its fields, and what makes an object of them again."""
-
-    kind: type
-    fields: tuple[str, ...]
-    build: Callable[..., object]
-
-
-# The word for each kind in a record, and what a component of it maps: one table for tensors, one for constants.
+# The word for each kind of tensor in a record, and what its vector or the rows and columns of its matrix are.
 _TENSORS: Final[dict[str, tuple[type[SecondRank] | type[FourthRank], tuple[Side, ...]]]] = {
     "stress": (Stress, ("stress",)),
     "strain": (Strain, ("strain",)),
     "stiffness": (Stiffness, ("stress", "strain")),
     "compliance": (Compliance, ("strain", "stress")),
 }
-CONSTANTS: Final[dict[str, ConstantsKind]] = {}
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -244,7 +235,8 @@ def read(text: str) -> Record:
     kind = read_choice(document["kind"], "kind", {**_TENSORS, **CONSTANTS})
     read_content = _read_tensor if kind in _TENSORS else _read_constants
     try:
-        quantity, notation, uncertainty = read_content(kind, document, batch, is_complex)
+        with np.errstate(all="ignore"):  # absurd numbers are found out by the checks of what comes out
+            quantity, notation, uncertainty = read_content(kind, document, batch, is_complex)
     except RecordError:
         raise
     except FourthRankError as error:
@@ -291,7 +283,9 @@ def _read_tensor(
         return make(maker, held), notation, uncertainty
     held[..., where[:, None], where] = values
     # The same check as for any matrix from outside: what lacks the major symmetry by more than rounding is refused.
-    return maker.from_matrix(held, WORKING), notation, uncertainty
+    quantity = maker.from_matrix(held, WORKING)
+    check_finite(working(quantity), kind, 2, WORKING.label_places)
+    return quantity, notation, uncertainty
 
 
 def _write_constants(x: object, notation: Notation | None, uncertainty: Any) -> dict[str, str]:
@@ -301,20 +295,17 @@ def _write_constants(x: object, notation: Notation | None, uncertainty: Any) -> 
         raise RecordError(f"a {type(x).__name__} cannot be recorded; expected one of {', '.join(known)}")
     if notation is not None:
         raise RecordError(f"a set of constants has no notation, got notation={notation!r}")
-    fields: dict[str, Inexact] = {name: np.asarray(getattr(x, name)) for name in CONSTANTS[kind].fields}
-    for name, array in fields.items():
-        check_finite(array, name, 0, lambda _: "constant")
-    dtype = np.result_type(np.float64, *fields.values())
-    (shape,) = {array.shape for array in fields.values()}
+    fields = CONSTANTS[kind].fields_of(x)
+    shape, is_complex = next((field.shape, field.dtype.kind == "c") for field in fields.values())
     parts = {"kind": dumps(kind), "notation": "null", "standard_uncertainty": "null"}
-    parts["components"] = _write_fields({name: array.astype(dtype) for name, array in fields.items()})
+    parts["components"] = _write_fields(fields)
     if uncertainty is not None:
         if not isinstance(uncertainty, Mapping) or set(cast(Mapping[str, ArrayLike], uncertainty)) != set(fields):
             raise RecordError(f"standard_uncertainty must be a mapping with the names {', '.join(fields)}")
         stated = cast(Mapping[str, ArrayLike], uncertainty)
         taken = {name: _take_uncertainty(stated[name], shape) for name in fields}
         parts["standard_uncertainty"] = _write_fields(taken)
-    return parts | write_shape(shape, dtype.kind == "c")
+    return parts | write_shape(shape, is_complex)
 
 
 def _read_constants(
@@ -324,13 +315,14 @@ def _read_constants(
     if document["notation"] is not None:
         raise RecordError("a set of constants has no notation; 'notation' must be null")
     components = read_object(document["components"], "components")
-    check_keys(components, row.fields, "components")
-    fields = {name: read_array(components[name], batch, is_complex, PLAIN, name) for name in row.fields}
+    names = row.choose(components)
+    check_keys(components, names, "components")
+    fields = {name: read_array(components[name], batch, is_complex, PLAIN, name) for name in names}
     uncertainty: dict[str, NDArray[np.float64]] | None = None
     if document["standard_uncertainty"] is not None:
         stated = read_object(document["standard_uncertainty"], "standard_uncertainty")
-        check_keys(stated, row.fields, "standard_uncertainty")
-        uncertainty = {name: _read_uncertainty(stated[name], batch, name) for name in row.fields}
+        check_keys(stated, names, "standard_uncertainty")
+        uncertainty = {name: _read_uncertainty(stated[name], batch, name) for name in names}
     return row.build(**fields), None, uncertainty
 
 
@@ -340,17 +332,23 @@ def _write_fields(fields: Mapping[str, Inexact]) -> str:
 
 def _take_uncertainty(value: ArrayLike, shape: tuple[int, ...]) -> NDArray[np.float64]:
     """Return the caller's uncertainties, one for each component."""
-    array = take_in(value, "standard_uncertainty", ()).astype(np.float64)
-    return _check_uncertainty(np.broadcast_to(array, shape), "standard_uncertainty")
+    array = take_in(value, "standard_uncertainty", ())
+    if array.dtype.kind == "c":
+        raise RecordError("standard_uncertainty must be real: one number for each component, complex ones included")
+    if array.ndim > len(shape) or any(n not in (1, m) for n, m in zip(array.shape[::-1], shape[::-1], strict=False)):
+        raise RecordError(f"standard_uncertainty of shape {array.shape} does not broadcast to {shape}")
+    return _check_uncertainty(np.broadcast_to(array.astype(np.float64), shape), "components")
 
 
 def _read_uncertainty(value: Json, shape: tuple[int, ...], name: str) -> NDArray[np.float64]:
-    return read_only(_check_uncertainty(read_array(value, shape, False, PLAIN, f"uncertainty of {name}"), name))
+    return read_only(
+        _check_uncertainty(read_array(value, shape, False, PLAIN, f"standard uncertainty of {name}"), name)
+    )
 
 
 def _check_uncertainty(array: Inexact, name: str) -> NDArray[np.float64]:
     if not (array >= 0.0).all() or not np.isfinite(array).all():
-        raise RecordError(f"uncertainty of {name}: every one must be a finite number that is not negative")
+        raise RecordError(f"standard uncertainty of {name}: every one must be a finite number that is not negative")
     return array
 
 
