@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 
 from ._arrays import Inexact
 from .errors import FourthRankError, ModuliError, RecordError
-from .moduli import Isotropic, Orthotropic
+from .moduli import Cubic, Isotropic, Orthotropic
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,6 +55,7 @@ def _isotropic(**fields: NDArray[np.float64]) -> Isotropic:
 
 
 CONSTANTS: Final[Mapping[str, Constants]] = {
+    "cubic constants": Constants(Cubic, (("C11", "C12", "C44"),), Cubic),
     "isotropic constants": Constants(
         Isotropic,
         (

@@ -15,8 +15,9 @@ from hypothesis import strategies as st
 from numpy.typing import NDArray
 
 from fourthrank import Compliance, Notation, Ordering, Stiffness, Strain, Stress, errors, record
+from fourthrank._record_constants import CONSTANTS as CONSTANT_KINDS
 from fourthrank._value import working
-from fourthrank.moduli import Isotropic, Orthotropic
+from fourthrank.moduli import Cubic, Isotropic, Orthotropic
 from tests import strategies as shared
 
 ROOT = Path(__file__).resolve().parents[2]
@@ -29,6 +30,7 @@ FOURTH: tuple[type[Stiffness] | type[Compliance], ...] = (Stiffness, Compliance)
 # The wear of doubles: tiny, huge, subnormal, zero of either sign, one bit beside a power of two.
 EDGES = [0.0, -0.0, 5e-324, 2.2250738585072014e-308, 1e-300, 1.0, 1.0000000000000002, 0.1, 1e22, 8.9e307, -3.5]
 
+Constants = Cubic | Isotropic | Orthotropic
 Any4 = Stress | Strain | Stiffness | Compliance
 
 
@@ -135,24 +137,30 @@ def test_weights_are_written_exactly(weight: float) -> None:
     assert record.from_json(text) == x
 
 
-CONSTANTS: list[Isotropic | Orthotropic] = [
+CONSTANTS: list[Constants] = [
     Isotropic.from_two(E=210.0, nu=0.3),
     Isotropic.from_two(K=160.0, G=80.0),
     Isotropic.from_two(nu=0.5, G=[1.0, 2.0]),  # incompressible: three of the six are infinite
     Isotropic.from_two(lam=[[0.7], [1.3]], M=[[5.1, 7.7]]),
     Isotropic.from_two(E=100.0 + 3.0j, nu=0.3),
     Isotropic.from_two(K=np.zeros((0, 2)) + 1.0, G=1.0),
+    Cubic(C11=[168.4, 165.7], C12=[121.4, 63.9], C44=75.4),
     Orthotropic(E1=155.0, E2=12.1, E3=12.1, G12=4.4, G13=4.4, G23=3.2, nu12=0.248, nu13=0.248, nu23=[0.458, 0.3]),
 ]
 
 
 @pytest.mark.parametrize("x", CONSTANTS, ids=lambda x: f"{type(x).__name__}{x.shape}")
-def test_sets_of_constants_are_read_with_all_fields_equal(x: Isotropic | Orthotropic) -> None:
+def test_sets_of_constants_are_read_with_all_fields_equal(x: Constants) -> None:
     """Whichever two constants a solid was made of, all six come back, the derived ones to the last bit."""
     text = record.to_json(x, unit="GPa")
     VALIDATOR.validate(json.loads(text))
     assert record.from_json(text) == x
     assert record.read(text).notation is None
+
+
+def test_the_schema_lists_the_kinds_that_are_read() -> None:
+    """A class that is added to the table must be added to the schema as well."""
+    assert set(SCHEMA["properties"]["kind"]["enum"]) == {"stress", "strain", "stiffness", "compliance", *CONSTANT_KINDS}
 
 
 def _with(text: str, **changes: object) -> str:
@@ -430,7 +438,7 @@ def test_ten_thousand_mutated_records_are_read_to_the_same_value_or_refused(muta
     """No other exception, no other value, none over 100 ms."""
     rng = random.Random(20_261_201)
     numbers = np.random.default_rng(7)
-    originals: list[tuple[str, Any4 | Isotropic | Orthotropic]] = []
+    originals: list[tuple[str, Any4 | Constants]] = []
     for kind in (*SECOND, *FOURTH):
         for batch in ((), (2,), (0, 3)):
             for is_complex in (False, True):
