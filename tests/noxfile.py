@@ -5,7 +5,6 @@ An interpreter that this machine lacks is named at the start and at the end, and
 """
 
 import glob
-import json
 import os
 import shutil
 import subprocess
@@ -110,7 +109,7 @@ def coverage(session: nox.Session) -> None:
 def types(session: nox.Session) -> None:
     """Check the types with two strict checkers, and that both reject every marked misuse."""
     session.chdir(ROOT)  # a session starts in the folder of this file
-    install(session, "test", *tools("nox", "numba", "pyright", "pytest-benchmark", "scipy-stubs"))
+    install(session, "test", *tools("nox", "numba", "pyright", "pytest-benchmark", "scipy-stubs", "types-jsonschema"))
     session.run("mypy")
     session.run("pyright")
     session.run("python", "-m", "tests.typing.pyright_rejects")
@@ -213,23 +212,13 @@ def benchmarks(session: nox.Session) -> None:
 def mutation(session: nox.Session) -> None:
     """Change a module in small ways and list the changes that no test notices (not in the default set).
 
-    Arguments after `--`: the module or folder, then the tests that are to notice; by default everything.
+    Arguments after `--` go to `tests/mutation.py`, for example ``--sample 50 ordering.py``.
     """
     session.chdir(ROOT)  # a session starts in the folder of this file
-    module, *noticing = session.posargs or ["src/fourthrank"]
     # The files are changed in place, so it is a copy that is changed.
     copy = Path(session.create_tmp()) / "copy"
     shutil.rmtree(copy, ignore_errors=True)
     shutil.copytree(ROOT, copy, ignore=shutil.ignore_patterns(".*", "__pycache__", "_build"))
     session.install(*tools("cosmic-ray"), "-e", f"{copy}[test]")
     session.chdir(copy)
-    settings = nox.project.load_toml(ROOT / "pyproject.toml")["tool"]["cosmic-ray"]
-    settings |= {"module-path": module, "test-command": " ".join([settings["test-command"], *noticing])}
-    lines = [f"{name} = {json.dumps(value)}" for name, value in settings.items()]  # such values are alike in TOML
-    Path("mutation.toml").write_text(
-        "\n".join(["[cosmic-ray]", *lines, 'distributor.name = "local"', ""]), encoding="utf-8"
-    )
-    session.run("cosmic-ray", "init", "mutation.toml", "mutation.sqlite", "--force", env=ONE_THREAD)
-    session.run("cosmic-ray", "baseline", "mutation.toml", env=ONE_THREAD)
-    session.run("cosmic-ray", "exec", "mutation.toml", "mutation.sqlite", env=ONE_THREAD)
-    session.run("cr-report", "mutation.sqlite", "--surviving-only", "--show-diff")
+    session.run("python", "-m", "tests.mutation", *session.posargs, env=ONE_THREAD)
